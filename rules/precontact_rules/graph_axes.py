@@ -1,0 +1,107 @@
+"""How what runs along an axis is reduced to what does not."""
+from .values import NO_VALUE, SAMPLES, Absent
+
+
+class OverAxes:
+    """The axis part of Graph."""
+
+    def _probability(self, c):
+        c = self.condition(c)
+        if isinstance(c, bool):
+            return self.number(1.0 if c else 0.0)
+        return self._over_samples("share", c, sure=True)
+
+    def _over_samples(self, op, node, sure=False):
+        if SAMPLES not in node.axes:
+            return self.node("indicator", node, sure=True) if op == "share" else node
+        return self.node(op, node, axes=node.axes - {SAMPLES}, sure=sure)
+
+    def _of_samples(self, op, a):
+        a = self.value(a)
+        return a if isinstance(a, Absent) else self._over_samples(op, a)
+
+    def _mean(self, a):
+        return self._of_samples("mean", a)
+
+    def _low_end(self, a):
+        return self._of_samples("low_end", a)
+
+    def _high_end(self, a):
+        return self._of_samples("high_end", a)
+
+    def _is_empty(self, axis):
+        return self.axis_of[axis]["from"] == "list" and axis not in self.filled
+
+    def _reduce(self, op, axis, value, boolean=False, sure=False):
+        axes = (value.axes | {axis}) - {axis}
+        return self.node(op, value, extra=(axis,), axes=axes, boolean=boolean, sure=sure)
+
+    def _any_over(self, axis, c):
+        c = self.condition(c)
+        if self._is_empty(axis):
+            return False
+        return c if isinstance(c, bool) or axis not in c.axes else self._reduce("any", axis, c, boolean=True, sure=True)
+
+    def _all_over(self, axis, c):
+        c = self.condition(c)
+        if self._is_empty(axis):
+            return True
+        return c if isinstance(c, bool) or axis not in c.axes else self._reduce("all", axis, c, boolean=True, sure=True)
+
+    def _count_over(self, axis, c):
+        c = self.condition(c)
+        if self._is_empty(axis) or c is False:
+            return self.number(0.0)
+        if c is True:
+            return self._size_of(axis)
+        return self._reduce("count", axis, c, sure=True)
+
+    def _sum_over(self, axis, x):
+        x = self.value(x)
+        if self._is_empty(axis):
+            return self.number(0.0)
+        return x if isinstance(x, Absent) else self._reduce("sum", axis, x)
+
+    def _extreme(self, op, axis, x):
+        x = self.value(x)
+        if isinstance(x, Absent) or self._is_empty(axis):
+            return self._missing(x)
+        return x if axis not in x.axes else self._reduce(op, axis, x)
+
+    def _least_over(self, axis, x):
+        return self._extreme("least", axis, x)
+
+    def _greatest_over(self, axis, x):
+        return self._extreme("greatest", axis, x)
+
+    def _at(self, op, axis, key, x):
+        key, x = self.value(key), self.value(x)
+        if isinstance(key, Absent) or isinstance(x, Absent) or self._is_empty(axis):
+            return self._missing(key, x)
+        axes = (key.axes | x.axes | {axis}) - {axis}
+        return self.node(op, key, x, extra=(axis,), axes=axes)
+
+    def _at_least(self, axis, key, x):
+        return self._at("at_least", axis, key, x)
+
+    def _at_greatest(self, axis, key, x):
+        return self._at("at_greatest", axis, key, x)
+
+    def _size_of(self, axis):
+        if self._is_empty(axis):
+            return self.number(0.0)
+        if self.axis_of[axis]["from"] == "list":
+            return self.node("size", extra=(axis,), sure=True)
+        return self.number(self.check.axis_size(axis))
+
+    def _index_of(self, axis):
+        if self._is_empty(axis):
+            return NO_VALUE
+        return self.node("place", extra=(axis,), axes=frozenset((axis,)), sure=True)
+
+    def _weighted_quantile(self, axes, x, weight, share):
+        values = [self.value(t) for t in (x, weight, share)]
+        if any(isinstance(v, Absent) for v in values) or any(self._is_empty(a) for a in axes):
+            return self._missing(*values)
+        left = (values[0].axes | values[1].axes) - frozenset(axes)
+        return self.node("weighted_quantile", *values, extra=tuple(axes), axes=left)

@@ -1,0 +1,126 @@
+"""One check compiled for one signature: the code, and where in its result each part of the answer is found."""
+import threading
+
+import numpy as np
+
+from .emit import Emitter
+from .graph import Graph
+from .points import POINTS
+from .values import SAMPLES, Absent, Key, Node, Pair
+
+_scratch = threading.local()
+_HIDDEN_AXES = ("count", "table")
+
+
+def _buffers(counts):
+    """Scratch arrays of this thread, at least as many as asked for."""
+    if not hasattr(_scratch, "f"):
+        _scratch.f, _scratch.b = [], []
+    while len(_scratch.f) < counts["f"]:
+        _scratch.f.append(np.empty(POINTS))
+    while len(_scratch.b) < counts["b"]:
+        _scratch.b.append(np.empty(POINTS, dtype=bool))
+    return _scratch.f, _scratch.b
+
+
+class Output:
+    """Where a formula's value stands in the compiled function's result.
+
+    `place` is an index, `ends` indices of the interval or None, `fixed` the value itself where the signature settles it, `absent` an
+    Absent, `hidden` the axes of a grid that is not reported.
+    """
+
+    __slots__ = ("formula", "place", "imaginary", "ends", "fixed", "absent", "hidden", "axes")
+
+    def __init__(self, formula):
+        self.formula = formula
+        self.place = self.imaginary = self.ends = self.fixed = self.absent = None
+        self.hidden, self.axes = (), ()
+
+
+class Plan:
+    """Run with `run(values, sampled, uniforms, sizes)`; read through `conditions`, `outputs`, `extra_conditions`."""
+
+    def __init__(self, model, states, filled):
+        self.model = model
+        graph = Graph(model.bundle, model, states, filled)
+        for formula in model.formulas:     # in dependency order, so that no recursion grows deep
+            graph.formula(formula["name"])
+        self._graph, self._wanted, self._places = graph, [], {}
+        self.conditions = [self._condition(f.get("when")) for f in model.findings]
+        self.cautions = [self._condition(c.get("when")) for c in model.declared.get("cautions", ())]
+        self.assumptions = [self._condition(a.get("when")) for a in model.declared.get("assumptions", ())]
+        self._condition_nodes = [graph.condition(f["when"]) if "when" in f else True for f in model.findings]
+        self.outputs = {f["name"]: self._output(f) for f in model.formulas}
+        emitter = Emitter(graph)
+        self._fast, self._safe, self._counts = emitter.compile(self._wanted)
+        self.uniform_count = len(graph.uniforms)
+        self._leaves = {}
+        self.exact = not emitter.arrays     # floats only: nothing to sample, no numpy call
+
+    # ---- what is wanted ----------------------------------------------------------------------------------------------------------------
+
+    def _want(self, node, lane="a"):
+        key = (node.index, lane)
+        if key not in self._places:
+            self._places[key] = len(self._wanted)
+            self._wanted.append((node, lane))
+        return self._places[key]
+
+    def _condition(self, tree):
+        """True, False, or a place in the result."""
+        value = True if tree is None else self._graph.condition(tree)
+        return value if isinstance(value, bool) else self._want(value)
+
+    def _output(self, formula):
+        output, value = Output(formula), self._graph.values[formula["name"]]
+        if isinstance(value, Absent):
+            output.absent = value
+        elif isinstance(value, (bool, Key)):
+            output.fixed = value.key if isinstance(value, Key) else value
+        else:
+            parts = [value] if isinstance(value, Node) else [value.re, value.im]
+            axes = parts[0].axes.union(*(p.axes for p in parts))
+            output.hidden = tuple(a["name"] for a in self.model.axes if a["name"] in axes and a["from"] in _HIDDEN_AXES)
+            output.axes = tuple(a["name"] for a in self.model.axes if a["name"] in axes)
+            if not output.hidden:
+                self._place(output, parts, axes)
+        return output
+
+    def _place(self, output, parts, axes):
+        if output.formula["show"] == "hidden" and not output.formula.get("in_sentence", True):
+            return
+        output.place = self._want(parts[0])
+        if len(parts) == 2:
+            output.imaginary = self._want(parts[1])
+        elif SAMPLES in axes and output.formula["show"] == "result" and not parts[0].boolean:
+            low, high = (self._graph.node(op, parts[0], axes=parts[0].axes - {SAMPLES}) for op in ("low_end", "high_end"))
+            output.ends = (self._want(low), self._want(high))
+
+    # ---- running -----------------------------------------------------------------------------------------------------------------------
+
+    def run(self, values, sampled, uniforms, sizes):
+        """The tuple of results. Never raises on arithmetic: what has no finite value is NaN or infinite in the tuple."""
+        f, b = _buffers(self._counts)
+        try:
+            return self._fast(values, sampled, uniforms, sizes, f, b)
+        except (ZeroDivisionError, ValueError, OverflowError):
+            return self._safe(values, sampled, uniforms, sizes, f, b)
+
+    # ---- what a verdict rests on -------------------------------------------------------------------------------------------------------
+
+    def leaves(self, decided):
+        """Leaf nodes on which the conditions of findings 0..decided rest: slots, constants, columns and tables."""
+        if decided not in self._leaves:
+            found, seen = [], set()
+            queue = [n for n in self._condition_nodes[:decided + 1] if isinstance(n, Node)]
+            while queue:
+                node = queue.pop()
+                if node.index in seen:
+                    continue
+                seen.add(node.index)
+                queue.extend(node.args)
+                if node.op in ("slot", "constant", "column", "lookup"):
+                    found.append((node.op,) + node.extra)
+            self._leaves[decided] = sorted(set(found), key=repr)
+        return self._leaves[decided]

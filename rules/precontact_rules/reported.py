@@ -1,0 +1,175 @@
+"""Reads the compiled function's result for one answer: numbers with their intervals, and the words of a sentence."""
+import math
+
+import numpy as np
+
+from .phrase import fill, number_text
+
+
+class Reader:
+    """The view of one request's results that the answer writer and the sentences look through."""
+
+    def __init__(self, writer, intake, plan, results, language):
+        self.model, self.units, self.texts = writer.model, writer.units, writer.texts
+        self.intake, self.plan, self.results, self.language = intake, plan, results, language
+
+    # ---- results -------------------------------------------------------------------------------------------------------------------
+
+    def result(self, output):
+        """The public form of a result, or None where it does not belong to this branch of the check."""
+        formula = output.formula
+        if output.absent is not None:
+            reason = self._why_absent(output)
+            return None if reason is None else {"value": None, "reason": reason}
+        if output.place is None:
+            return {"value": output.fixed}
+        low, high = (self.results[i] for i in output.ends) if output.ends else (None, None)
+        value = self.results[output.place]
+        if output.axes:
+            return self._along(output.axes, np.asarray(value), low, high, formula)
+        return self._one(value, low, high, formula)
+
+    def _along(self, axes, value, low, high, formula):
+        axis, rest = axes[0], axes[1:]
+        items = []
+        for place in range(value.shape[0]):
+            ends = (None, None) if low is None else (np.asarray(low)[place], np.asarray(high)[place])
+            item = self._along(rest, value[place], *ends, formula) if rest else self._one(value[place].item(), *ends, formula)
+            if self.model.axis_from(axis) == "entries":
+                item = {"id": self.model.entry_ids(axis)[place], **(item if isinstance(item, dict) else {"items": item})}
+            items.append(item)
+        return items
+
+    def _one(self, value, low, high, formula):
+        if isinstance(value, bool):
+            return {"value": value}
+        if not math.isfinite(value):
+            return {"value": None, "reason": self._no_value(formula)}
+        if "names" in formula:
+            return self._named(formula["names"], int(value))
+        unit = formula["unit"]
+        if low is None:
+            return {"value": self._scaled(value, unit)}
+        low, high = float(low), float(high)
+        if not (math.isfinite(low) and math.isfinite(high)):
+            return {"value": self._scaled(value, unit), "low": None, "high": None, "reason": self.texts["partly-no-value"][self.language]}
+        return {"value": self._scaled(value, unit), "low": self._scaled(low, unit), "high": self._scaled(high, unit)}
+
+    def _scaled(self, value, unit):
+        factor = self.units[unit]["factor"]
+        return (value if factor == 1 else value / factor) + 0.0    # + 0.0 turns a negative zero into zero
+
+    def _named(self, axis, place):
+        size = self.intake.sizes.get(axis, 0) if self.model.axis_from(axis) == "list" else self.model.axis_size(axis)
+        if not 0 <= place < size:
+            return {"value": None, "reason": self.texts["no-value"][self.language]}
+        if self.model.axis_from(axis) == "entries":
+            return {"value": self.model.entry_ids(axis)[place], "title": self.name_at(axis, place)}
+        return {"value": place, "title": self.name_at(axis, place)}
+
+    def name_at(self, axis, place):
+        """What a person calls the item or entry at a place of an axis."""
+        if self.model.axis_from(axis) == "entries":
+            return self.model.entry_title(axis, place)[self.language]
+        label = self.model.slot_index.get(axis + ".label")
+        if label is not None and self.intake.states[label] != "a" and self.intake.values[label][place]:
+            return self.intake.values[label][place]
+        for path, titles in self.intake.titles.items():
+            if path.startswith(axis + ".") and titles[place]:
+                return titles[place][self.language]
+        return self.texts["item-number"][self.language].replace("{number}", str(place + 1))
+
+    def _no_value(self, formula):
+        return formula["absent_because"][self.language] if "absent_because" in formula else self.texts["no-value"][self.language]
+
+    def _why_absent(self, output):
+        applicable = self.model.applicable(self.intake.states)
+        if any(path not in applicable for path in output.absent.needs):
+            return None
+        if not output.absent.needs:
+            return self._no_value(output.formula) if "absent_because" in output.formula else None
+        keys = [self.model.slots[self.model.slot_index[path]].pointer.replace("/*", "") for path in output.absent.needs]
+        return self.texts["needs-input"][self.language].replace("{names}", ", ".join(keys))
+
+    # ---- working -------------------------------------------------------------------------------------------------------------------
+
+    def plain(self, output):
+        """A formula's value for the working: a number, boolean, list, complex as an object, or null."""
+        if output.hidden:
+            return None
+        if output.place is None:
+            return output.fixed
+        value, unit = self.results[output.place], output.formula["unit"]
+        if output.imaginary is not None:
+            return {"re": self._bare(value, unit), "im": self._bare(self.results[output.imaginary], unit)}
+        return self._bare(value, unit)
+
+    def _bare(self, value, unit):
+        if isinstance(value, float):
+            return self._scaled(value, unit) if math.isfinite(value) else None
+        if isinstance(value, bool):
+            return value
+        value = np.asarray(value)
+        if value.ndim:
+            return [self._bare(v, unit) for v in value]
+        return self._bare(value.item(), unit)
+
+    # ---- sentences -----------------------------------------------------------------------------------------------------------------
+
+    def sentence(self, template):
+        """The template's words with its places filled in."""
+        return fill(template, self, self.language)
+
+    def words(self, name):
+        """What stands in a sentence for {name}: a quantity with its unit, a choice's meaning, or a title."""
+        output = self.plan.outputs.get(name)
+        if output is not None:
+            return self._formula_words(output)
+        if name in self.intake.titles:
+            return self.intake.titles[name][self.language]
+        index = self.model.slot_index.get(name)
+        if index is None:
+            constant = self.model.constant(name)
+            return self._quantity(constant["value"], constant["unit"])
+        return self._slot_words(self.model.slots[index], self.intake.states[index], self.intake.values[index])
+
+    def _formula_words(self, output):
+        formula = output.formula
+        if output.absent is not None or output.hidden:
+            return self._quantity(None, formula["unit"])
+        value = output.fixed if output.place is None else self.results[output.place]
+        if isinstance(value, bool):
+            return self.texts["yes" if value else "no"][self.language]
+        if isinstance(value, str):
+            return value
+        if "names" in formula:
+            return self.name_at(formula["names"], int(value)) if math.isfinite(value) else self._quantity(None, formula["unit"])
+        if output.imaginary is not None:
+            value = math.sqrt(value * value + self.results[output.imaginary] * self.results[output.imaginary])
+        return self._quantity(value if math.isfinite(value) else None, formula["unit"])
+
+    def _slot_words(self, slot, state, value):
+        if slot.kind == "choice" and state is not None:
+            return next(c["meaning"][self.language] for c in slot.field["choices"] if c["key"] == state)
+        if slot.kind == "text" and state != "a":
+            return value
+        if slot.kind == "switch" and state is not None:
+            return self.texts["yes" if state else "no"][self.language]
+        if state in (None, "a"):
+            return self._quantity(None, slot.unit)
+        return self._quantity(value[1] if isinstance(value, tuple) else value, slot.unit)
+
+    def _quantity(self, value, unit):
+        return number_text(value, unit, self.units, self.language)
+
+    def listed(self, name, condition):
+        """For {axis.label | condition}: the names of the items for which the condition holds."""
+        axis = name.split(".")[0]
+        output = self.plan.outputs[condition]
+        if output.absent is not None or output.fixed is False:
+            return []
+        size = self.intake.sizes.get(axis, 0) if self.model.axis_from(axis) == "list" else self.model.axis_size(axis)
+        holds = [True] * size if output.fixed is True else np.asarray(self.results[output.place]).tolist()
+        if isinstance(holds, bool):
+            holds = [holds] * size
+        return [self.name_at(axis, place) for place in range(size) if holds[place]]
