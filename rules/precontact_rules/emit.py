@@ -7,7 +7,8 @@ has no finite answer, and with functions that follow IEEE 754; the second runs o
 import numpy as np
 
 from . import exact_math, kernels
-from .points import POINTS, coverage_ends
+from .coverage import coverage_ends, share
+from .points import POINTS
 from .values import SAMPLES
 
 _INFIX = {"add": "+", "sub": "-", "mul": "*", "lt": "<", "le": "<=", "gt": ">", "ge": ">=", "eq": "==", "ne": "!=", "and": "and", "or": "or"}
@@ -28,11 +29,13 @@ _ARRAY = {"exp": "exp_array({0})", "ln": "ln_array({0})", "sin": "sin_array({0})
 _REDUCE = {"any": "{0}.any(axis={1})", "all": "{0}.all(axis={1})", "count": "{0}.sum(axis={1}, dtype=float)", "sum": "fold_sum({0}, {1})",
            "least": "fmin.reduce({0}, axis={1})", "greatest": "fmax.reduce({0}, axis={1})"}
 
+_SIDED = ("lt", "le", "gt", "ge")      # comparisons whose probability can be corrected by the difference of their sides
+
 _GLOBALS = {
     "root": __import__("math").sqrt, "div": exact_math.div, "sqrt": exact_math.sqrt, "floor": exact_math.floor, "nan": exact_math.NAN,
     "exp": exact_math.exp, "ln": exact_math.ln, "sin": exact_math.sin, "cos": exact_math.cos,
     "exp_array": exact_math.exp_array, "ln_array": exact_math.ln_array, "sin_array": exact_math.sin_array, "cos_array": exact_math.cos_array,
-    "fold_sum": exact_math.fold_sum, "ends": coverage_ends, "where": np.where, "fmin": np.fmin, "fmax": np.fmax, "arange": np.arange,
+    "fold_sum": exact_math.fold_sum, "ends": coverage_ends, "share": share, "where": np.where, "fmin": np.fmin, "fmax": np.fmax, "arange": np.arange,
     "count_nonzero": np.count_nonzero, "at_least": kernels.at_least, "at_greatest": kernels.at_greatest,
     "weighted_quantile": kernels.weighted_quantile, "spread_along": kernels.spread_along, "POINTS": float(POINTS),
 }
@@ -58,9 +61,9 @@ class Emitter:
             self.globals["np_" + op] = getattr(np, ufunc)
 
     def compile(self, wanted):
-        """Return (fast, safe, scratch counts); the functions take (v, s, u, n, f, b) and return a tuple, one value per wanted (node, lane).
+        """Return (fast, safe, scratch counts); the functions take (v, s, u, d, n, f, b) and return a tuple, one value per wanted (node, lane).
 
-        v: values per slot; s: sampled arrays per slot; u: coordinates of the unknowns; n: items per list axis; f, b: scratch buffers
+        v: values per slot; s: sampled arrays per slot; u: coordinates of the unknowns; d: the Drawn behind them; n: items per list axis; f, b: scratch buffers
         for floats and booleans.
         """
         needed = self._needed(wanted)
@@ -86,6 +89,8 @@ class Emitter:
             found[node.index, lane] = (node, lane)
             inner = "s" if node.op in ("share", "mean", "low_end", "high_end") else lane
             queue.extend((a, self._lane(a, inner)) for a in node.args)
+            if node.op == "share" and node.args[0].op in _SIDED:      # its sides are read once more, for the correction
+                queue.extend((a, self._lane(a, "s")) for a in node.args[0].args)
         return [found[k] for k in sorted(found)]
 
     def _axes(self, node, lane):
@@ -199,7 +204,13 @@ class Emitter:
         self.lines.append(_Line(name, self._arg_names(node, lane), f"{low} + ({high} - {low}) * {place}"))
 
     def _op_share(self, name, node, lane):
-        argument = self._name(node.args[0], "s")
+        condition = node.args[0]
+        argument, axes = self._name(condition, "s"), self._axes(condition, "s")
+        if condition.op in _SIDED and any(SAMPLES in a.axes for a in condition.args):
+            sides = self._operands(condition, "s", axes)
+            args = [argument, *self._arg_names(condition, "s")]
+            self.lines.append(_Line(name, args, f"share({argument}, {sides[0]} - {sides[1]}, {condition.op in ('gt', 'ge')}, d)"))
+            return
         count = f"count_nonzero({argument})" if not node.axes else f"{argument}.sum(axis=-1, dtype=float)"
         self.lines.append(_Line(name, [argument], f"{count} / POINTS"))
 
@@ -212,7 +223,7 @@ class Emitter:
         argument = self._name(node.args[0], "s")
         both = argument + "_ends"
         if not any(line.name == both for line in self.lines):
-            self.lines.append(_Line(both, [argument], f"ends({argument})"))
+            self.lines.append(_Line(both, [argument], f"ends({argument}, d)"))
         self.lines.append(_Line(name, [both], f"{both}[{part}]"))
 
     def _op_low_end(self, name, node, lane):
@@ -281,7 +292,7 @@ class Emitter:
 
     def _function(self, form, results):
         body = [f"    {line.name} = {getattr(line, form)}" for line in self.lines]
-        text = "\n".join(["def run(v, s, u, n, f, b):", *body, f"    return ({', '.join(results)}{',' if results else ''})"])
+        text = "\n".join(["def run(v, s, u, d, n, f, b):", *body, f"    return ({', '.join(results)}{',' if results else ''})"])
         space = dict(self.globals)
         exec(compile(text, f"<{self.graph.check.name} {form}>", "exec"), space)
         space["run"].text = text

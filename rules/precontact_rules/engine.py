@@ -58,11 +58,12 @@ class Question:
         """Return (plan, results, slots whose spread leaves the allowed range)."""
         plan = self.plan(intake)
         if plan.exact:
-            return plan, plan.run(intake.values, _NO_SAMPLES, _NO_SAMPLES, intake.sizes), _NO_SAMPLES
+            return plan, plan.run(intake.values, _NO_SAMPLES, _NO_SAMPLES, None, intake.sizes), _NO_SAMPLES
         with np.errstate(all="ignore"):
-            values, sampled, used, beyond = self._sample(intake)
-            uniforms = [self._points.uniform(used + k) for k in range(plan.uniform_count)]
-            return plan, plan.run(values, sampled, uniforms, intake.sizes), beyond
+            values, sampled, forms, beyond = self._sample(intake)
+            uniforms = [self._points.uniform(len(forms) + k) for k in range(plan.uniform_count)]
+            drawn = self._points.drawn("".join(forms) + "r" * plan.uniform_count)
+            return plan, plan.run(values, sampled, uniforms, drawn, intake.sizes), beyond
 
     def answer(self, body, language):
         """The answer to a request body, as JSON-ready data. Raises InputProblems."""
@@ -73,14 +74,14 @@ class Question:
     # ---- samples -------------------------------------------------------------------------------------------------------------------
 
     def _sample(self, intake):
-        """Best estimates and sampled arrays per slot; dimensions are handed out in slot order, then in item order."""
-        values, sampled, dimension, beyond = list(intake.values), [None] * len(intake.values), 0, []
+        """Best estimates, sampled arrays, forms of the dimensions used, slots beyond their range; dimensions are handed out in slot order, then in item order."""
+        values, sampled, forms, beyond = list(intake.values), [None] * len(intake.values), [], []
         for index, state in enumerate(intake.states):
             if state == "u":
                 spread = values[index]
-                sampled[index] = self._spread(spread, dimension)
+                sampled[index] = self._spread(spread, len(forms))
                 values[index] = spread[1]
-                dimension += 1
+                forms.append(spread[0])
                 if self._leaves_range(spread, index):
                     beyond.append(index)
             elif state in ("L", "U", "N", "V"):
@@ -96,14 +97,14 @@ class Question:
                     rows = []
                     for item in items:
                         if isinstance(item, tuple):
-                            rows.append(self._spread(item, dimension))
-                            dimension += 1
+                            rows.append(self._spread(item, len(forms)))
+                            forms.append(item[0])
                             if self._leaves_range(item, index) and index not in beyond:
                                 beyond.append(index)
                         else:
                             rows.append(np.full(POINTS, np.nan if item is None else item))
                     sampled[index] = np.stack(rows)
-        return values, sampled, dimension, beyond
+        return values, sampled, forms, beyond
 
     def _spread(self, spread, dimension):
         form, value, size = spread

@@ -39,7 +39,7 @@ class Output:
 
 
 class Plan:
-    """Run with `run(values, sampled, uniforms, sizes)`; read through `conditions`, `outputs`, `extra_conditions`."""
+    """Run with `run(values, sampled, uniforms, drawn, sizes)`; read through `conditions`, `outputs`, `extra_conditions`."""
 
     def __init__(self, model, states, filled):
         self.model = model
@@ -99,13 +99,13 @@ class Plan:
 
     # ---- running -----------------------------------------------------------------------------------------------------------------------
 
-    def run(self, values, sampled, uniforms, sizes):
+    def run(self, values, sampled, uniforms, drawn, sizes):
         """The tuple of results. Never raises on arithmetic: what has no finite value is NaN or infinite in the tuple."""
         f, b = _buffers(self._counts)
         try:
-            return self._fast(values, sampled, uniforms, sizes, f, b)
+            return self._fast(values, sampled, uniforms, drawn, sizes, f, b)
         except (ZeroDivisionError, ValueError, OverflowError):
-            return self._safe(values, sampled, uniforms, sizes, f, b)
+            return self._safe(values, sampled, uniforms, drawn, sizes, f, b)
 
     # ---- what a verdict rests on -------------------------------------------------------------------------------------------------------
 

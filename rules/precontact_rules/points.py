@@ -9,11 +9,7 @@ from . import exact_math
 
 POINTS = 4096
 SCORE_LIMIT = exact_math.normal_score((POINTS - 0.5) / POINTS)   # the largest normal score in the set
-
-# The 95 % coverage interval is linear between order statistics at N p - 1/2 (counted from 0).
-_LOW_AT, _LOW_PART = divmod(POINTS * 0.025 - 0.5, 1.0)
-_HIGH_AT, _HIGH_PART = divmod(POINTS * 0.975 - 0.5, 1.0)
-_LOW_AT, _HIGH_AT = int(_LOW_AT), int(_HIGH_AT)
+SUBSET = 512               # slopes are fitted on so many of the points
 
 
 class PointSet:
@@ -23,6 +19,7 @@ class PointSet:
         self._components = [int(z) for z in components]
         self._uniform, self._symmetric, self._normal = {}, {}, {}
         self._scores = None
+        self._drawn = {}
 
     @property
     def dimensions(self):
@@ -55,18 +52,55 @@ class PointSet:
             found = self._normal[dimension] = self._scores[self._order(dimension)]
         return found
 
+    def drawn(self, forms):
+        """The Drawn for dimensions 0, 1, ... of these forms ("r" rectangular, "n" normal); made once for each tuple of forms."""
+        found = self._drawn.get(forms)
+        if found is None:
+            found = self._drawn[forms] = Drawn([self.normal(d) if f == "n" else self.symmetric(d) for d, f in enumerate(forms)], forms)
+        return found
 
-def coverage_ends(x):
-    """Ends of the probabilistically symmetric 95 % coverage interval (JCGM 101 cl. 7.7) along the last axis.
 
-    Returns two arrays (or floats for a 1-d `x`); NaN where any sample is not a number.
-    """
-    ordered = np.sort(x, axis=-1)      # sorts NaN to the end
-    lows, highs = ordered[..., _LOW_AT], ordered[..., _HIGH_AT]
-    low = lows + (ordered[..., _LOW_AT + 1] - lows) * _LOW_PART
-    high = highs + (ordered[..., _HIGH_AT + 1] - highs) * _HIGH_PART
-    last = ordered[..., -1]
-    if x.ndim == 1:
-        return (float(low), float(high)) if last == last else (exact_math.NAN, exact_math.NAN)
-    gap = np.isnan(last)
-    return np.where(gap, exact_math.NAN, low), np.where(gap, exact_math.NAN, high)
+class Drawn:
+    """The coordinates on which one request's uncertain quantities were drawn, ready for fitting slopes by least squares."""
+
+    __slots__ = ("coordinates", "forms", "_means", "_subset", "_factor")
+
+    # Triangular numbers visit the points without the lattice's own regularity, under which a subset of it may collapse.
+    _CHOSEN = np.array([k * (k + 1) // 2 % POINTS for k in range(SUBSET)])
+
+    def __init__(self, coordinates, forms):
+        self.coordinates, self.forms = coordinates, forms
+        if len(forms) > 1:
+            columns = [c[self._CHOSEN] for c in coordinates]
+            self._means = [float(exact_math.fold_sum(c, 0)) / SUBSET for c in columns]
+            self._subset = np.array([c - mean for c, mean in zip(columns, self._means)]).T.copy()
+            self._factor = self._cholesky()
+
+    def _cholesky(self):
+        gram = [[float(exact_math.fold_sum(a * b, 0)) for b in self._subset.T] for a in self._subset.T]
+        factor = [[0.0] * len(gram) for _ in gram]
+        for i, row in enumerate(gram):
+            for j in range(i + 1):
+                rest = row[j]
+                for k in range(j):
+                    rest -= factor[i][k] * factor[j][k]
+                factor[i][j] = exact_math.sqrt(rest) if i == j else rest / factor[j][j]
+        return factor
+
+    def slopes(self, x):
+        """(value at the origin, slopes) of the linear function of the coordinates that fits the samples `x` best on the subset."""
+        chosen = x[self._CHOSEN]
+        centre = float(exact_math.fold_sum(chosen, 0)) / SUBSET
+        sums = exact_math.fold_sum(self._subset * (chosen - centre)[:, None], 0).tolist()
+        factor, count = self._factor, len(sums)
+        for i in range(count):
+            for k in range(i):
+                sums[i] -= factor[i][k] * sums[k]
+            sums[i] /= factor[i][i]
+        for i in range(count - 1, -1, -1):
+            for k in range(i + 1, count):
+                sums[i] -= factor[k][i] * sums[k]
+            sums[i] /= factor[i][i]
+        for mean, slope in zip(self._means, sums):
+            centre -= mean * slope
+        return centre, sums
