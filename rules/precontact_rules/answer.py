@@ -1,5 +1,5 @@
 """From the engine's numbers to the answer a person reads and a machine stores."""
-from .phrase import compile_template, number_text
+from .phrase import compile_template
 from .reported import Reader
 
 _SEVERE = ("unacceptable", "conditional")
@@ -21,9 +21,9 @@ class AnswerWriter:
         self._results = [f for f in sorted(model.formulas, key=lambda f: f["order"]) if f["show"] == "result"]
         self._working = [f for f in sorted(model.formulas, key=lambda f: f["order"]) if f["show"] != "hidden"]
 
-    def write(self, intake, plan, results, beyond, input_digest, language):
+    def write(self, intake, plan, results, intervals, beyond, input_digest, language):
         """The answer document, a fresh dict."""
-        reader = Reader(self, intake, plan, results, language)
+        reader = Reader(self, intake, plan, results, intervals, language)
         decided, holding = self._decide(plan.conditions, results)
         verdict = self.model.findings[decided]["verdict"]
         findings = [self._finding(number, reader, language) for number in holding]
@@ -142,7 +142,3 @@ class AnswerWriter:
                 ids.append(caution["caution"])
         ordered = sorted(dict.fromkeys(ids), key=lambda i: _WORDS.index(self._cautions[i]["word"]))
         return [{"id": i, "word": self._cautions[i]["word"], "text": self._cautions[i]["text"][language]} for i in ordered]
-
-    def quantity(self, value, unit, language):
-        """A number in SI as a person writes it, in the formula's unit."""
-        return number_text(value, unit, self.units, language)

@@ -3,7 +3,8 @@
 4 096 points alone leave about 2 % in the ends of an interval when several inputs are uncertain.  Most results are nearly linear in their inputs, and
 for a linear result the same ends can be had far more exactly.  So: fit slopes b_j, form L = sum b_j s_j on the same points, and
 add to the plain estimate what the plain estimate is known to be wrong by on L (control variates: Asmussen & Glynn, Stochastic
-Simulation (2007), V.2).
+Simulation (2007), V.2).  L is a sum of independent rectangular and normal terms: its characteristic function is a product of sinc and Gauss
+terms, and its distribution function follows by the Gil-Pelaez integral on the midpoint rule (Davies, Biometrika 60 (1973) 415-417).
 
 Whatever the slopes, the added term is a difference of two estimates of one number: it cannot bias the result, only fail to help.
 """
@@ -11,39 +12,72 @@ import math
 
 import numpy as np
 
-from .exact_math import NAN, cos_array, exp_array, fold_sum, sin_array
+from .exact_math import NAN, exp_array, fold_sum, sin_array, sin_cos_array
 from .points import POINTS
 
 # The 95 % coverage interval (JCGM 101 cl. 7.7) is linear between order statistics at N p - 1/2, counted from 0.
 _ENDS = (0.025, 0.975)
 _PLACES = tuple((int(POINTS * p - 0.5), POINTS * p - 0.5 - int(POINTS * p - 0.5)) for p in _ENDS)
 
-# Midpoints for the inversion integral; a normal term counts as ending at 8 standard deviations.
-_NODES = np.arange(256) + 0.5
-_NORMAL_REACH = 8.0
-_NEWTON_STEPS = 2
+# Midpoints of the inversion integral; a normal term counts as ending at 6 standard deviations (2e-9 lies beyond).
+_NODES = np.arange(64) + 0.5
+_NORMAL_REACH = 6.0
+
+NO_ENDS = (NAN, NAN)
 
 
-def coverage_ends(x, drawn):
-    """(low, high) ends of the probabilistically symmetric 95 % interval along the last axis of `x`; NaN where a sample has no value."""
-    if x.ndim > 1:
-        rows = [coverage_ends(row, drawn) for row in x.reshape(-1, x.shape[-1])]
-        return tuple(np.array(part).reshape(x.shape[:-1]) for part in zip(*rows))
-    ordered = np.sort(x)                     # sorts NaN to the end
-    if not ordered[-1] - ordered[0] < math.inf:
-        return NAN, NAN
-    ends = _plain_ends(ordered)
-    surrogate = _Surrogate.fit(x, drawn)
-    if surrogate is None:
-        return ends
-    linear = _plain_ends(np.sort(surrogate.values))
-    exact = surrogate.ends(0.5 * (linear[1] - linear[0]) + surrogate.centre)
-    corrected = [end + (true - plain) for end, true, plain in zip(ends, exact, linear)]
-    return min(max(corrected[0], float(ordered[0])), float(ordered[-1])), min(max(corrected[1], float(ordered[0])), float(ordered[-1]))
+def coverage_ends(arrays, drawn):
+    """[(low, high), ...] of the probabilistically symmetric 95 % interval of each 1-d array of samples; NaN where a sample has no value."""
+    found = []
+    for x in arrays:
+        ordered = np.sort(x)                 # sorts NaN to the end
+        finite = ordered[-1] - ordered[0] < math.inf
+        found.append([ordered, *_plain_ends(ordered)] if finite else None)
+    usable = [k for k, plain in enumerate(found) if plain]
+    if len(drawn.forms) > 1 and usable:      # with one uncertain input the points are already even
+        lines = [_Line(*drawn.slopes(arrays[k]), drawn) for k in usable]
+        lines = [(k, line) for k, line in zip(usable, lines) if 0.0 < line.reach < math.inf]
+        if lines:
+            _correct(found, lines, drawn)
+    return [NO_ENDS if plain is None else (plain[1], plain[2]) for plain in found]
+
+
+def ends_of(x, drawn):
+    """(low, high) along the last axis of `x`, which may have axes before it."""
+    if x.ndim == 1:
+        return coverage_ends([x], drawn)[0]
+    pairs = coverage_ends(list(x.reshape(-1, x.shape[-1])), drawn)
+    return tuple(np.array(part).reshape(x.shape[:-1]) for part in zip(*pairs))
 
 
 def _plain_ends(ordered):
     return [float(ordered[at] + (ordered[at + 1] - ordered[at]) * part) for at, part in _PLACES]
+
+
+def _correct(found, lines, drawn):
+    """Move the plain ends by what plain ends of the linear stand-ins are wrong by, never past the outermost sample."""
+    near = []
+    for _, line in lines:
+        values = line.values(drawn)
+        values.sort()
+        near.append(_plain_ends(values))
+    steps = np.array([math.pi / line.reach for _, line in lines])
+    weights = _characteristic([line for _, line in lines], steps)
+    guess = [0.5 * (high - low) for low, high in near]
+    sines, cosines = sin_cos_array((np.array(guess) * steps)[:, None] * _NODES)
+    below = fold_sum(sines * weights, 1).tolist()
+    density = fold_sum(cosines * (weights * _NODES), 1).tolist()
+    for i, (k, line) in enumerate(lines):
+        slope = density[i] * float(steps[i])
+        if not slope > 0.0:
+            continue
+        # Newton's step to the upper quantile of L, with the curvature of a normal density as the second-order term
+        step = ((_ENDS[1] - 0.5) * math.pi - below[i]) / slope
+        step += step * step * guess[i] / (2.0 * line.variance)
+        end, plain = guess[i] + step, found[k]
+        least, most = float(plain[0][0]), float(plain[0][-1])
+        plain[1] = min(max(plain[1] - end - near[i][0], least), most)
+        plain[2] = min(max(plain[2] + end - near[i][1], least), most)
 
 
 def share(holds, difference, positive, drawn):
@@ -56,72 +90,59 @@ def share(holds, difference, positive, drawn):
         return np.array([share(h, d, positive, drawn) for h, d in flat]).reshape(holds.shape[:-1])
     count = int(np.count_nonzero(holds))
     plain = count / POINTS
-    if count in (0, POINTS):                 # certain on every point: no correction may unsettle that
+    if count in (0, POINTS) or len(drawn.forms) < 2:      # certain on every point: no correction may unsettle that
         return plain
-    surrogate = _Surrogate.fit(difference, drawn)
-    if surrogate is None:
+    line = _Line(*drawn.slopes(difference), drawn)
+    if not 0.0 < line.reach < math.inf:
         return plain
-    below = surrogate.below(0.0) - np.count_nonzero(surrogate.values <= 0.0) / POINTS
-    return min(max(plain - below if positive else plain + below, 0.0), 1.0)
+    step = math.pi / line.reach
+    weights = _characteristic([line], np.array([step]))[0]
+    below = 0.5 + float(fold_sum(sin_array((-line.origin * step) * _NODES) * weights, 0)) / math.pi
+    correction = below - int(np.count_nonzero(line.values(drawn) <= -line.origin)) / POINTS
+    return min(max(plain - correction if positive else plain + correction, 0.0), 1.0)
 
 
-class _Surrogate:
-    """The linear stand-in for a result: its values on the points, and its exact distribution.
+class _Line:
+    """A linear stand-in, centred on 0: slopes, variance, and how far it reaches."""
 
-    A sum of independent rectangular and normal terms has the characteristic function of a product of sinc and Gauss terms; the distribution
-    function follows by the Gil-Pelaez integral on the midpoint rule (Davies, Biometrika 60 (1973) 415-417).
-    """
+    __slots__ = ("origin", "slopes", "flat", "normal", "variance", "reach")
 
-    __slots__ = ("values", "centre", "_step", "_weights")
-
-    @classmethod
-    def fit(cls, x, drawn):
-        """The surrogate of x, or None where it cannot help: one uncertain input (the points are already even), no slope, a gap."""
-        if len(drawn.forms) < 2:
-            return None
-        centre, slopes = drawn.slopes(x)
-        reach, variance, flat = 0.0, 0.0, []
+    def __init__(self, origin, slopes, drawn):
+        self.origin, self.slopes, self.flat, self.normal, self.reach = origin, slopes, [], 0.0, 0.0
+        self.variance = 0.0
         for slope, form in zip(slopes, drawn.forms):
             if form == "n":
-                variance += slope * slope
-            elif slope != 0.0:
-                flat.append(slope)
-                reach += abs(slope)
-        reach += _NORMAL_REACH * math.sqrt(variance)
-        if not 0.0 < reach < math.inf:
-            return None
-        made = cls()
-        made.centre, made._step = centre, math.pi / reach
-        made._weights = made._characteristic(flat, variance)
-        made.values = np.full(POINTS, centre)
+                self.normal += slope * slope
+                self.flat.append(0.0)
+            else:
+                self.variance += slope * slope / 3.0
+                self.flat.append(slope)
+                self.reach += abs(slope)
+        self.variance += self.normal
+        self.reach += _NORMAL_REACH * math.sqrt(self.normal)
+
+    def values(self, drawn):
+        """The stand-in on the points."""
+        total = np.multiply(drawn.coordinates[0], self.slopes[0])
         scratch = np.empty(POINTS)
-        for coordinates, slope in zip(drawn.coordinates, slopes):
-            if slope != 0.0:
-                made.values += np.multiply(coordinates, slope, out=scratch)
-        return made
+        for coordinates, slope in zip(drawn.coordinates[1:], self.slopes[1:]):
+            total += np.multiply(coordinates, slope, out=scratch)
+        return total
 
-    def _characteristic(self, flat, variance):
-        frequency = _NODES * self._step
-        weights = exp_array((-0.5 * variance) * (frequency * frequency)) / _NODES
-        if flat:
-            angles = np.multiply.outer(np.array(flat), frequency)
-            for row in sin_array(angles) / angles:
-                weights *= row
-        return weights
 
-    def below(self, at):
-        """P(L <= at)."""
-        return 0.5 + float(fold_sum(sin_array((at - self.centre) * self._step * _NODES) * self._weights, 0)) / math.pi
+def _characteristic(lines, steps):
+    """Characteristic function at the nodes divided by the node number: one row per line."""
+    frequency = steps[:, None] * _NODES
+    normal = np.array([-0.5 * line.normal for line in lines])
+    weights = exp_array(normal[:, None] * (frequency * frequency)) / _NODES if normal.any() else np.tile(1.0 / _NODES, (len(lines), 1))
+    flat = np.array([line.flat for line in lines]).T
+    flat = flat[flat.any(axis=1)]
+    if len(flat):
+        angles = flat[:, :, None] * frequency
+        angles[angles == 0.0] = _TINY
+        for term in sin_array(angles) / angles:
+            weights *= term
+    return weights
 
-    def _density(self, at):
-        return float(fold_sum(cos_array((at - self.centre) * self._step * _NODES) * self._weights * _NODES, 0)) * self._step / math.pi
 
-    def ends(self, near):
-        """The 2.5 % and 97.5 % quantiles of L, by Newton steps from an estimate of the upper one; L is symmetric about its centre."""
-        at = near
-        for _ in range(_NEWTON_STEPS):
-            density = self._density(at)
-            if not density > 0.0:
-                break
-            at += (_ENDS[1] - self.below(at)) / density
-        return self.centre - (at - self.centre), at
+_TINY = 1e-30       # sin x / x is exactly 1 here

@@ -7,7 +7,7 @@ has no finite answer, and with functions that follow IEEE 754; the second runs o
 import numpy as np
 
 from . import exact_math, kernels
-from .coverage import coverage_ends, share
+from .coverage import ends_of, share
 from .points import POINTS
 from .values import SAMPLES
 
@@ -35,7 +35,7 @@ _GLOBALS = {
     "root": __import__("math").sqrt, "div": exact_math.div, "sqrt": exact_math.sqrt, "floor": exact_math.floor, "nan": exact_math.NAN,
     "exp": exact_math.exp, "ln": exact_math.ln, "sin": exact_math.sin, "cos": exact_math.cos,
     "exp_array": exact_math.exp_array, "ln_array": exact_math.ln_array, "sin_array": exact_math.sin_array, "cos_array": exact_math.cos_array,
-    "fold_sum": exact_math.fold_sum, "ends": coverage_ends, "share": share, "where": np.where, "fmin": np.fmin, "fmax": np.fmax, "arange": np.arange,
+    "fold_sum": exact_math.fold_sum, "ends_of": ends_of, "share": share, "where": np.where, "fmin": np.fmin, "fmax": np.fmax, "arange": np.arange,
     "count_nonzero": np.count_nonzero, "at_least": kernels.at_least, "at_greatest": kernels.at_greatest,
     "weighted_quantile": kernels.weighted_quantile, "spread_along": kernels.spread_along, "POINTS": float(POINTS),
 }
@@ -223,7 +223,7 @@ class Emitter:
         argument = self._name(node.args[0], "s")
         both = argument + "_ends"
         if not any(line.name == both for line in self.lines):
-            self.lines.append(_Line(both, [argument], f"ends({argument}, d)"))
+            self.lines.append(_Line(both, [argument], f"ends_of({argument}, d)"))
         self.lines.append(_Line(name, [both], f"{both}[{part}]"))
 
     def _op_low_end(self, name, node, lane):

@@ -55,21 +55,22 @@ class Question:
         return plan
 
     def compute(self, intake):
-        """Return (plan, results, slots whose spread leaves the allowed range)."""
+        """Return (plan, results, intervals by place, slots whose spread leaves the allowed range)."""
         plan = self.plan(intake)
         if plan.exact:
-            return plan, plan.run(intake.values, _NO_SAMPLES, _NO_SAMPLES, None, intake.sizes), _NO_SAMPLES
+            return plan, plan.run(intake.values, _NO_SAMPLES, _NO_SAMPLES, None, intake.sizes), None, _NO_SAMPLES
         with np.errstate(all="ignore"):
             values, sampled, forms, beyond = self._sample(intake)
             uniforms = [self._points.uniform(len(forms) + k) for k in range(plan.uniform_count)]
             drawn = self._points.drawn("".join(forms) + "r" * plan.uniform_count)
-            return plan, plan.run(values, sampled, uniforms, drawn, intake.sizes), beyond
+            results = plan.run(values, sampled, uniforms, drawn, intake.sizes)
+            return plan, results, plan.intervals(results, drawn), beyond
 
     def answer(self, body, language):
         """The answer to a request body, as JSON-ready data. Raises InputProblems."""
         intake = self.intake(body)
-        plan, results, beyond = self.compute(intake)
-        return self.writer.write(intake, plan, results, beyond, digest(body), language)
+        plan, results, intervals, beyond = self.compute(intake)
+        return self.writer.write(intake, plan, results, intervals, beyond, digest(body), language)
 
     # ---- samples -------------------------------------------------------------------------------------------------------------------
 

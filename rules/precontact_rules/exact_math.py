@@ -142,14 +142,19 @@ def _quadrant_array(x):
 
 def sin_array(x):
     """sin of every element, the same bits as sin()."""
-    q, s, c = _quadrant_array(x)
-    return np.where(q == 0.0, s, np.where(q == 1.0, c, np.where(q == 2.0, -s, -c)))
+    return sin_cos_array(x)[0]
 
 
 def cos_array(x):
     """cos of every element, the same bits as cos()."""
+    return sin_cos_array(x)[1]
+
+
+def sin_cos_array(x):
+    """(sin, cos) of every element at the cost of one."""
     q, s, c = _quadrant_array(x)
-    return np.where(q == 0.0, c, np.where(q == 1.0, -s, np.where(q == 2.0, -c, s)))
+    sine = np.where(q == 0.0, s, np.where(q == 1.0, c, np.where(q == 2.0, -s, -c)))
+    return sine, np.where(q == 0.0, c, np.where(q == 1.0, -s, np.where(q == 2.0, -c, s)))
 
 
 def fold_sum(x, axis):

@@ -3,6 +3,7 @@ import threading
 
 import numpy as np
 
+from .coverage import coverage_ends, ends_of
 from .emit import Emitter
 from .graph import Graph
 from .points import POINTS
@@ -26,15 +27,15 @@ def _buffers(counts):
 class Output:
     """Where a formula's value stands in the compiled function's result.
 
-    `place` is an index, `ends` indices of the interval or None, `fixed` the value itself where the signature settles it, `absent` an
+    `place` is an index, `samples` that of its samples or None, `fixed` the value itself where the signature settles it, `absent` an
     Absent, `hidden` the axes of a grid that is not reported.
     """
 
-    __slots__ = ("formula", "place", "imaginary", "ends", "fixed", "absent", "hidden", "axes")
+    __slots__ = ("formula", "place", "imaginary", "samples", "fixed", "absent", "hidden", "axes")
 
     def __init__(self, formula):
         self.formula = formula
-        self.place = self.imaginary = self.ends = self.fixed = self.absent = None
+        self.place = self.imaginary = self.samples = self.fixed = self.absent = None
         self.hidden, self.axes = (), ()
 
 
@@ -47,6 +48,7 @@ class Plan:
         for formula in model.formulas:     # in dependency order, so that no recursion grows deep
             graph.formula(formula["name"])
         self._graph, self._wanted, self._places = graph, [], {}
+        self._flat, self._deep = [], []        # places of samples to be reported with an interval: one axis, or more
         self.conditions = [self._condition(f.get("when")) for f in model.findings]
         self.cautions = [self._condition(c.get("when")) for c in model.declared.get("cautions", ())]
         self.assumptions = [self._condition(a.get("when")) for a in model.declared.get("assumptions", ())]
@@ -94,8 +96,8 @@ class Plan:
         if len(parts) == 2:
             output.imaginary = self._want(parts[1])
         elif SAMPLES in axes and output.formula["show"] == "result" and not parts[0].boolean:
-            low, high = (self._graph.node(op, parts[0], axes=parts[0].axes - {SAMPLES}) for op in ("low_end", "high_end"))
-            output.ends = (self._want(low), self._want(high))
+            output.samples = self._want(parts[0], "s")
+            (self._flat if axes == {SAMPLES} else self._deep).append(output.samples)
 
     # ---- running -----------------------------------------------------------------------------------------------------------------------
 
@@ -106,6 +108,13 @@ class Plan:
             return self._fast(values, sampled, uniforms, drawn, sizes, f, b)
         except (ZeroDivisionError, ValueError, OverflowError):
             return self._safe(values, sampled, uniforms, drawn, sizes, f, b)
+
+    def intervals(self, results, drawn):
+        """{place of samples: (low, high)} for every result reported with an interval."""
+        found = dict(zip(self._flat, coverage_ends([results[place] for place in self._flat], drawn)))
+        for place in self._deep:
+            found[place] = ends_of(results[place], drawn)
+        return found
 
     # ---- what a verdict rests on -------------------------------------------------------------------------------------------------------
 

@@ -9,9 +9,10 @@ from .phrase import fill, number_text
 class Reader:
     """The view of one request's results that the answer writer and the sentences look through."""
 
-    def __init__(self, writer, intake, plan, results, language):
+    def __init__(self, writer, intake, plan, results, intervals, language):
         self.model, self.units, self.texts = writer.model, writer.units, writer.texts
-        self.intake, self.plan, self.results, self.language = intake, plan, results, language
+        self.intake, self.plan, self.language = intake, plan, language
+        self.results, self.intervals = results, intervals
 
     # ---- results -------------------------------------------------------------------------------------------------------------------
 
@@ -23,7 +24,7 @@ class Reader:
             return None if reason is None else {"value": None, "reason": reason}
         if output.place is None:
             return {"value": output.fixed}
-        low, high = (self.results[i] for i in output.ends) if output.ends else (None, None)
+        low, high = (None, None) if output.samples is None else self.intervals[output.samples]
         value = self.results[output.place]
         if output.axes:
             return self._along(output.axes, np.asarray(value), low, high, formula)
