@@ -80,14 +80,25 @@ def _correct(found, lines, drawn):
         plain[2] = min(max(plain[2] + end - near[i][1], least), most)
 
 
+def plain_share(holds, known):
+    """Share of the samples for which a condition holds, along the last axis; NaN where `known` is not true throughout."""
+    count = np.count_nonzero(holds, axis=-1) / POINTS
+    everywhere = np.all(known, axis=-1)
+    if holds.ndim == 1:
+        return float(count) if everywhere else NAN
+    return np.where(everywhere, count, NAN)
+
+
 def share(holds, difference, positive, drawn):
     """Probability of a comparison, from its truth per sample and the difference of its two sides.
 
-    `positive` says whether it holds where the difference is above 0 (else where below).
+    `positive` says whether it holds where the difference is above 0 (else where below). NaN where a side has no value.
     """
     if holds.ndim > 1:
         flat = zip(holds.reshape(-1, holds.shape[-1]), difference.reshape(-1, difference.shape[-1]))
         return np.array([share(h, d, positive, drawn) for h, d in flat]).reshape(holds.shape[:-1])
+    if not np.isfinite(difference).all():
+        return NAN
     count = int(np.count_nonzero(holds))
     plain = count / POINTS
     if count in (0, POINTS) or len(drawn.forms) < 2:      # certain on every point: no correction may unsettle that

@@ -7,7 +7,7 @@ has no finite answer, and with functions that follow IEEE 754; the second runs o
 import numpy as np
 
 from . import exact_math, kernels
-from .coverage import ends_of, share
+from .coverage import ends_of, plain_share, share
 from .points import POINTS
 from .values import SAMPLES
 
@@ -15,7 +15,7 @@ _INFIX = {"add": "+", "sub": "-", "mul": "*", "lt": "<", "le": "<=", "gt": ">", 
 _SCALAR = {
     "neg": "-{0}", "not": "not {0}", "abs": "abs({0})", "floor": "floor({0})", "exp": "exp({0})", "ln": "ln({0})", "sin": "sin({0})",
     "cos": "cos({0})", "min": "{0} if {0} < {1} or {0} != {0} else {1}", "max": "{0} if {0} > {1} or {0} != {0} else {1}",
-    "select": "{1} if {0} else {2}", "finite": "{0} - {0} == 0.0", "indicator": "1.0 if {0} else 0.0",
+    "select": "{1} if {0} else {2}", "finite": "{0} - {0} == 0.0",
 }
 _FAST = {"div": "{0} / {1}", "sqrt": "root({0})"}
 _SAFE = {"div": "div({0}, {1})", "sqrt": "sqrt({0})"}
@@ -24,8 +24,7 @@ _UFUNC = {
     "sqrt": "sqrt", "floor": "floor", "lt": "less", "le": "less_equal", "gt": "greater", "ge": "greater_equal", "eq": "equal",
     "ne": "not_equal", "and": "logical_and", "or": "logical_or", "not": "logical_not", "finite": "isfinite",
 }
-_ARRAY = {"exp": "exp_array({0})", "ln": "ln_array({0})", "sin": "sin_array({0})", "cos": "cos_array({0})", "select": "where({0}, {1}, {2})",
-          "indicator": "({0}).astype(float)"}
+_ARRAY = {"exp": "exp_array({0})", "ln": "ln_array({0})", "sin": "sin_array({0})", "cos": "cos_array({0})", "select": "where({0}, {1}, {2})"}
 _REDUCE = {"any": "{0}.any(axis={1})", "all": "{0}.all(axis={1})", "count": "{0}.sum(axis={1}, dtype=float)", "sum": "fold_sum({0}, {1})",
            "least": "fmin.reduce({0}, axis={1})", "greatest": "fmax.reduce({0}, axis={1})"}
 
@@ -35,8 +34,8 @@ _GLOBALS = {
     "root": __import__("math").sqrt, "div": exact_math.div, "sqrt": exact_math.sqrt, "floor": exact_math.floor, "nan": exact_math.NAN,
     "exp": exact_math.exp, "ln": exact_math.ln, "sin": exact_math.sin, "cos": exact_math.cos,
     "exp_array": exact_math.exp_array, "ln_array": exact_math.ln_array, "sin_array": exact_math.sin_array, "cos_array": exact_math.cos_array,
-    "fold_sum": exact_math.fold_sum, "ends_of": ends_of, "share": share, "where": np.where, "fmin": np.fmin, "fmax": np.fmax, "arange": np.arange,
-    "count_nonzero": np.count_nonzero, "at_least": kernels.at_least, "at_greatest": kernels.at_greatest,
+    "fold_sum": exact_math.fold_sum, "ends_of": ends_of, "share": share, "plain_share": plain_share, "where": np.where, "fmin": np.fmin, "fmax": np.fmax, "arange": np.arange,
+    "at_least": kernels.at_least, "at_greatest": kernels.at_greatest,
     "weighted_quantile": kernels.weighted_quantile, "spread_along": kernels.spread_along, "POINTS": float(POINTS),
 }
 
@@ -88,10 +87,15 @@ class Emitter:
                 continue
             found[node.index, lane] = (node, lane)
             inner = "s" if node.op in ("share", "mean", "low_end", "high_end") else lane
-            queue.extend((a, self._lane(a, inner)) for a in node.args)
-            if node.op == "share" and node.args[0].op in _SIDED:      # its sides are read once more, for the correction
-                queue.extend((a, self._lane(a, "s")) for a in node.args[0].args)
+            queue.extend((a, self._lane(a, inner)) for a in self._inputs(node))
         return [found[k] for k in sorted(found)]
+
+    @staticmethod
+    def _inputs(node):
+        """The nodes this one's code reads. A corrected share reads the sides of its comparison, and sees by itself where they have no value."""
+        if node.op == "share" and node.args[0].op in _SIDED:
+            return (node.args[0], *node.args[0].args)
+        return node.args
 
     def _axes(self, node, lane):
         return [a for a in self.order if a in node.axes and (lane == "s" or a != SAMPLES)]
@@ -206,13 +210,20 @@ class Emitter:
     def _op_share(self, name, node, lane):
         condition = node.args[0]
         argument, axes = self._name(condition, "s"), self._axes(condition, "s")
-        if condition.op in _SIDED and any(SAMPLES in a.axes for a in condition.args):
+        if condition.op in _SIDED:
             sides = self._operands(condition, "s", axes)
             args = [argument, *self._arg_names(condition, "s")]
             self.lines.append(_Line(name, args, f"share({argument}, {sides[0]} - {sides[1]}, {condition.op in ('gt', 'ge')}, d)"))
             return
-        count = f"count_nonzero({argument})" if not node.axes else f"{argument}.sum(axis=-1, dtype=float)"
-        self.lines.append(_Line(name, [argument], f"{count} / POINTS"))
+        known = self._expanded(node.args[1], "s", axes) if len(node.args) > 1 else "True"
+        self.lines.append(_Line(name, self._arg_names(node, "s"), f"plain_share({argument}, {known})"))
+
+    def _op_indicator(self, name, node, lane):
+        axes = self._axes(node, lane)
+        operands = self._operands(node, lane, axes)
+        known = operands[1] if len(operands) > 1 else "True"
+        text = f"where({known}, where({operands[0]}, 1.0, 0.0), nan)" if axes else f"(1.0 if {operands[0]} else 0.0) if {known} else nan"
+        self.lines.append(_Line(name, self._arg_names(node, lane), text))
 
     def _op_mean(self, name, node, lane):
         argument = self._name(node.args[0], "s")

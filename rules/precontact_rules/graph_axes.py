@@ -1,24 +1,53 @@
 """How what runs along an axis is reduced to what does not."""
-from .values import NO_VALUE, SAMPLES, Absent
+from .values import COMPARISONS, NO_VALUE, SAMPLES, Absent
 
 
 class OverAxes:
     """The axis part of Graph."""
 
     def _probability(self, c):
+        # A comparison with nothing is false, but its probability is unknown: a finding must not fire on missing data.
+        missing = self._missing_in(c)
+        if missing:
+            return Absent(missing)
         c = self.condition(c)
         if isinstance(c, bool):
             return self.number(1.0 if c else 0.0)
-        return self._over_samples("share", c, sure=True)
+        known = self._known(c)
+        sampled = SAMPLES in c.axes
+        return self.node("share" if sampled else "indicator", c, *known, axes=c.axes - {SAMPLES}, sure=not known)
 
-    def _over_samples(self, op, node, sure=False):
-        if SAMPLES not in node.axes:
-            return self.node("indicator", node, sure=True) if op == "share" else node
-        return self.node(op, node, axes=node.axes - {SAMPLES}, sure=sure)
+    def _missing_in(self, tree):
+        """Paths of the inputs whose absence leaves some comparison in a condition without an operand."""
+        op, rest = tree[0], tree[1:]
+        if op in COMPARISONS:
+            return [n for v in map(self.value, rest) if isinstance(v, Absent) for n in v.needs or ("",)]
+        if op in ("and", "or", "not"):
+            return [n for part in rest for n in self._missing_in(part)]
+        if op == "ref" and rest[0] in self.formula_of:
+            return self._missing_in(self.formula_of[rest[0]]["tree"])
+        return []
+
+    def _known(self, condition):
+        """[node true where every operand compared in `condition` has a value], or [] where that is certain."""
+        operands, queue = [], [condition]
+        while queue:
+            node = queue.pop()
+            if node.op in COMPARISONS:
+                operands.extend(a for a in node.args if not a.sure and a not in operands)
+            elif node.op in ("and", "or", "not"):
+                queue.extend(node.args)
+        known = None
+        for operand in sorted(operands, key=lambda o: o.index):
+            finite = self._has_value(operand)
+            known = finite if known is None else self._and_nodes(known, finite)
+        return [] if known is None else [known]
 
     def _of_samples(self, op, a):
         a = self.value(a)
-        return a if isinstance(a, Absent) else self._over_samples(op, a)
+        if isinstance(a, Absent) or SAMPLES not in a.axes:
+            return a
+        return self.node(op, a, axes=a.axes - {SAMPLES})
 
     def _mean(self, a):
         return self._of_samples("mean", a)

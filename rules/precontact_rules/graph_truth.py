@@ -1,7 +1,5 @@
 """How comparisons, conditionals and questions of absence become nodes, or are settled by the signature."""
-from .values import Absent, Key, Node, Pair
-
-_COMPARISONS = ("eq", "ne", "lt", "le", "gt", "ge")
+from .values import COMPARISONS, Absent, Key, Node, Pair
 
 
 class Truth:
@@ -134,5 +132,5 @@ class Truth:
         return self.node("select", condition, a, b, sure=sure)
 
 
-for _op in _COMPARISONS:
+for _op in COMPARISONS:
     setattr(Truth, "_" + _op, lambda self, a, b, op=_op: self._compare(op, a, b))

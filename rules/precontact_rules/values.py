@@ -1,6 +1,7 @@
 """The things a specialised graph is made of."""
 
 SAMPLES = "samples"
+COMPARISONS = ("eq", "ne", "lt", "le", "gt", "ge")
 
 
 class Node:
