@@ -1,0 +1,87 @@
+"""Numbers and sentences as a person reads them, in English and Spanish, the same characters from every runtime."""
+import re
+from decimal import ROUND_HALF_UP, Decimal
+
+DIGITS = 4
+_PREFIXES = {-12: "p", -9: "n", -6: "µ", -3: "m", 0: "", 3: "k", 6: "M", 9: "G"}
+_NO_VALUE = {"en": "(no value)", "es": "(sin valor)"}
+_AND = {"en": " and ", "es": " y "}
+_PLACE = re.compile(r"\{([^{}]*)\}")
+_LISTED = re.compile(r"^\s*([a-z0-9_.]+)\s*\|\s*([a-z0-9_.]+)\s*$")
+
+
+def number_text(value, unit, units, language):
+    """A number in SI with its unit, to four significant digits: "2.497 MΩ", "-7.7 %"; None becomes "(no value)"."""
+    if value is None:
+        return _NO_VALUE[language]
+    known = units[unit]
+    value = value / known["factor"]
+    exponent, digits = _rounded(abs(value))
+    prefix = ""
+    if known["prefixes"] and value:
+        power = min(max((exponent // 3) * 3, -12), 9)
+        prefix, exponent = _PREFIXES[power], exponent - power
+    text = _laid_out(digits, exponent)
+    if language == "es":
+        text = text.replace(".", ",")
+    symbol = prefix + known["symbol"]
+    return ("-" if value < 0 and text.strip("0.,") else "") + text + ("\u00a0" + symbol if symbol else "")
+
+
+def _rounded(value):
+    """(decimal exponent of the first digit, the significant digits) of a value >= 0, rounded half up on its exact binary value."""
+    if value == 0:
+        return 0, "0"
+    exact = Decimal(value)
+    exponent = exact.adjusted()
+    rounded = exact.quantize(Decimal(1).scaleb(exponent - DIGITS + 1), rounding=ROUND_HALF_UP)
+    exponent = rounded.adjusted()
+    return exponent, "".join(map(str, rounded.as_tuple().digits)).rstrip("0") or "0"
+
+
+def _laid_out(digits, exponent):
+    if not -4 <= exponent <= 9:
+        return digits[0] + ("." + digits[1:] if len(digits) > 1 else "") + f"e{exponent}"
+    if exponent < 0:
+        return "0." + "0" * (-exponent - 1) + digits
+    whole = digits[:exponent + 1].ljust(exponent + 1, "0")
+    fraction = digits[exponent + 1:]
+    return whole + ("." + fraction if fraction else "")
+
+
+class Template:
+    """A sentence cut at its places: plain words, names, and lists of items."""
+
+    __slots__ = ("parts",)
+
+    def __init__(self, text):
+        self.parts, end = [], 0
+        for place in _PLACE.finditer(text):
+            self.parts.append(("words", text[end:place.start()]))
+            listed = _LISTED.match(place.group(1))
+            self.parts.append(("list", listed.groups()) if listed else ("name", place.group(1).strip()))
+            end = place.end()
+        self.parts.append(("words", text[end:]))
+
+
+compile_template = Template
+
+
+def fill(template, reader, language):
+    """The sentence; `reader.words(name)` and `reader.listed(name, condition)` supply what stands in its places."""
+    filled = []
+    for kind, content in template.parts:
+        if kind == "words":
+            filled.append(content)
+        elif kind == "name":
+            filled.append(reader.words(content))
+        else:
+            filled.append(joined(reader.listed(*content), language))
+    return "".join(filled)
+
+
+def joined(names, language):
+    """Names as a list in a sentence: "a, b and c"."""
+    if len(names) < 2:
+        return "".join(names)
+    return ", ".join(names[:-1]) + _AND[language] + names[-1]
