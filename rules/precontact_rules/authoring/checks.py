@@ -1,7 +1,7 @@
 """One check, from its file and its parts to the record in the bundle."""
 from . import data, fields
 from .expression import names_in
-from .infer import Inference, Mismatch, Type, resolved, shown
+from .infer import Inference, Mismatch, resolved, shown
 from .reader import Map, Seq
 from .scope import Scope
 from .units import dimension
@@ -182,11 +182,10 @@ class CheckBuilder:
 
     def _formula(self, name, order):
         content, tree = self.scope.formulas[name]
-        try:
-            found = self.inference.formula(name)
-        except Mismatch as fault:
+        found = self.inference.formula(name)
+        if name in self.inference.failed:
+            fault = self.inference.failed[name]
             self.source.fault(content.file, content.at("is"), fault.found, fault.expected)
-            found = Type("number")
         unit = self._unit(content, found)
         plain = unit is None or "names" in content
         record = {"name": name, "key": name if plain else f"{name}_{unit}", "unit": unit, "meaning": self.source.text(content, "meaning"),

@@ -37,16 +37,18 @@ class Inference:
     """Types of trees within one scope; formulas are inferred once, in whatever order they are asked for."""
 
     def __init__(self, scope):
-        self.scope, self.types, self.under_way = scope, {}, []
+        self.scope, self.types, self.under_way, self.failed = scope, {}, [], {}
 
     def formula(self, name):
-        """The Type of a formula. Raises Mismatch on a cycle."""
+        """The Type of a formula; one that does not fit is kept in `failed` and counts as anything, so that it is reported once."""
         if name not in self.types:
             if name in self.under_way:
                 raise Mismatch("a cycle: " + " -> ".join([*self.under_way[self.under_way.index(name):], name]), "formulas that do not need themselves")
             self.under_way.append(name)
             try:
                 self.types[name] = self.of(self.scope.formulas[name][1])
+            except Mismatch as fault:
+                self.failed[name], self.types[name] = fault, Type("nothing", ANY, absent=True)
             finally:
                 self.under_way.pop()
         return self.types[name]

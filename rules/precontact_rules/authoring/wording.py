@@ -18,10 +18,7 @@ def _name(name, scope, inference):
     if name in scope.references or name in scope.texts or name in scope.constants:
         return []
     if name in scope.formulas or name in scope.inputs:
-        try:
-            axes = (inference.formula(name) if name in scope.formulas else scope.inputs[name]).axes - {"samples"}
-        except ValueError:
-            return []          # already a fault of the formula
+        axes = (inference.formula(name) if name in scope.formulas else scope.inputs[name]).axes - {"samples"}
         return [(f"{{{name}}} runs along {', '.join(sorted(axes))}", "a single value, or {axis.label | condition}")] if axes else []
     return [(f"the place {{{name}}}", "a formula, input, constant or reference of this check")]
 
@@ -33,10 +30,9 @@ def _listed(name, condition, scope, inference):
         return [(f"the list {{{name} | {condition}}}", f"an axis: {', '.join(scope.axes)}")]
     if condition not in scope.formulas:
         return [(f"the condition {condition!r} of a list", "a boolean formula on that axis")]
-    try:
-        found = inference.formula(condition)
-    except ValueError:
-        return []
+    found = inference.formula(condition)
+    if condition in inference.failed:
+        return []          # already a fault of the formula
     if found.kind != "boolean" or "samples" in found.axes or found.axes - {axis}:
         return [(f"{condition} as the condition of a list", f"a boolean along {axis} alone, without samples")]
     return []
