@@ -106,10 +106,10 @@ class Reader:
         return self._bare(value, unit)
 
     def _bare(self, value, unit):
-        if isinstance(value, float):
-            return self._scaled(value, unit) if math.isfinite(value) else None
         if isinstance(value, bool):
             return value
+        if isinstance(value, (float, int)):
+            return self._scaled(value, unit) if math.isfinite(value) else None
         value = np.asarray(value)
         if value.ndim:
             return [self._bare(v, unit) for v in value]
