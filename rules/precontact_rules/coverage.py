@@ -36,7 +36,7 @@ def coverage_ends(arrays, drawn):
     usable = [k for k, plain in enumerate(found) if plain]
     if len(drawn.forms) > 1 and usable:      # with one uncertain input the points are already even
         lines = [_Line(*drawn.slopes(arrays[k]), drawn) for k in usable]
-        lines = [(k, line) for k, line in zip(usable, lines) if 0.0 < line.reach < math.inf]
+        lines = [(k, line) for k, line in zip(usable, lines) if line.usable]
         if lines:
             _correct(found, lines, drawn)
     return [NO_ENDS if plain is None else (plain[1], plain[2]) for plain in found]
@@ -104,7 +104,7 @@ def share(holds, difference, positive, drawn):
     if count in (0, POINTS) or len(drawn.forms) < 2:      # certain on every point: no correction may unsettle that
         return plain
     line = _Line(*drawn.slopes(difference), drawn)
-    if not 0.0 < line.reach < math.inf:
+    if not line.usable:
         return plain
     step = math.pi / line.reach
     weights = _characteristic([line], np.array([step]))[0]
@@ -131,6 +131,11 @@ class _Line:
                 self.reach += abs(slope)
         self.variance += self.normal
         self.reach += _NORMAL_REACH * math.sqrt(self.normal)
+
+    @property
+    def usable(self):
+        """Whether it spreads at all, by amounts whose squares a float can hold."""
+        return 0.0 < self.variance < math.inf and self.reach < math.inf
 
     def values(self, drawn):
         """The stand-in on the points."""
