@@ -1,0 +1,22 @@
+"""What all tests share: the rule set as its sources are now."""
+from pathlib import Path
+
+import pytest
+
+from precontact_rules import RuleSet
+from precontact_rules.authoring.build import build, canonical
+
+SOURCE = Path(__file__).resolve().parents[1] / "rules" / "source"
+
+
+def pytest_addoption(parser):
+    """Lets a person who edits rules try a copy of the sources."""
+    parser.addoption("--rule-source", type=Path, default=SOURCE, help="folder of rule sources to test instead of rules/source")
+
+
+@pytest.fixture(scope="session")
+def rule_set(request):
+    """The rule set built from the working sources, not the released one."""
+    bundle, faults, _ = build(request.config.getoption("--rule-source"))
+    assert not faults, "\n".join(map(str, sorted(faults)))
+    return RuleSet(canonical(bundle))
