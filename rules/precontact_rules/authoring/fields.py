@@ -108,7 +108,12 @@ def _curve(source, field, content, branches, inside):
 
 def _group(source, field, content, branches, inside):
     field["fields"] = declared(source, content["fields"], branches, inside)
-    for inner in field["fields"]:       # a group's restriction is its fields' restriction
+    _hand_down(field)
+
+
+def _hand_down(field):
+    # What restricts a group or a list restricts its fields.
+    for inner in field["fields"]:
         if "only" in field:
             inner["only"] = [b for b in inner.get("only", field["only"]) if b in field["only"]]
 
@@ -118,6 +123,7 @@ def _list(source, field, content, branches, inside):
         source.fault(content.file, content.line, "a list inside a list", "lists stand at the top")
     field.update(item=content["item"], least=content.get("least", 0), most=content.get("most", 16))
     field["fields"] = declared(source, content["fields"], branches, "list")
+    _hand_down(field)
     for inner in field["fields"]:
         if inner["kind"] in ("group", "list", "curve"):
             source.fault(content.file, content.line, f"a {inner['kind']} inside the list", "numbers, choices, switches, texts, references")
