@@ -36,7 +36,8 @@ _GLOBALS = {
     "exp_array": exact_math.exp_array, "ln_array": exact_math.ln_array, "sin_array": exact_math.sin_array, "cos_array": exact_math.cos_array,
     "fold_sum": exact_math.fold_sum, "ends_of": ends_of, "share": share, "plain_share": plain_share, "where": np.where, "fmin": np.fmin, "fmax": np.fmax, "arange": np.arange,
     "at_least": kernels.at_least, "at_greatest": kernels.at_greatest,
-    "weighted_quantile": kernels.weighted_quantile, "spread_along": kernels.spread_along, "POINTS": float(POINTS),
+    "ranking": kernels.ranking, "quantile": kernels.quantile, "share_place": kernels.share_place, "at_place": kernels.at_place,
+    "spread_onto": kernels.spread_onto, "spread_along": kernels.spread_along, "POINTS": float(POINTS),
 }
 
 
@@ -253,8 +254,7 @@ class Emitter:
         text = self._expanded(argument, lane, axes)
         position = axes.index(axis)
         if axis not in argument.axes:
-            size = f"n[{axis!r}]" if self.graph.axis_of[axis]["from"] == "list" else str(self.graph.check.axis_size(axis))
-            text = f"spread_along({self._name(argument, lane)}, {position}, {size})"
+            text = f"spread_along({self._name(argument, lane)}, {position}, {self._size_text(axis)})"
         text = _REDUCE[node.op].format(text, position)
         if len(axes) == 1:
             text = f"{'bool' if node.boolean else 'float'}({text})"
@@ -268,11 +268,43 @@ class Emitter:
 
     _op_at_greatest = _op_at_least
 
-    def _op_weighted_quantile(self, name, node, lane):
+    def _op_ranking(self, name, node, lane):
         axes = self._with_axes(node, lane, node.extra)
-        x, weight, share = self._operands(node, lane, axes)
-        places = tuple(axes.index(a) for a in axes if a in node.extra)
-        self.lines.append(_Line(name, self._arg_names(node, lane), f"weighted_quantile({x}, {weight}, {share}, {places}, {len(axes)})"))
+        text = f"{node.op}({', '.join(self._operands(node, lane, axes))}, {self._over(node.extra, axes)})"
+        self.lines.append(_Line(name, self._arg_names(node, lane), text))
+
+    _op_share_place = _op_ranking
+
+    def _op_quantile(self, name, node, lane):
+        axes = self._axes(node, lane)
+        ranking, share = node.args
+        kept = tuple(axes.index(a) for a in self._axes(ranking, lane))
+        text = f"quantile({self._name(ranking, lane)}, {self._expanded(share, lane, axes)}, {kept}, {len(axes)})"
+        self.lines.append(_Line(name, self._arg_names(node, lane), text))
+
+    def _op_at_place(self, name, node, lane):
+        axes = self._with_axes(node, lane, node.extra)
+        x, place = node.args
+        text = f"at_place({self._expanded(x, lane, axes)}, {self._expanded(place, lane, axes)}, {self._over(node.extra, axes)})"
+        self.lines.append(_Line(name, self._arg_names(node, lane), text))
+
+    def _op_spread_onto(self, name, node, lane):
+        onto, reduced = node.extra[0], node.extra[1:]
+        axes = [a for a in self._with_axes(node, lane, reduced) if a != onto]
+        position, weight = self._operands(node, lane, axes)
+        target = self._axes(node, lane).index(onto)
+        text = f"spread_onto({position}, {weight}, {self._over(reduced, axes)}, {self._size_text(onto)}, {target})"
+        self.lines.append(_Line(name, self._arg_names(node, lane), text))
+
+    def _over(self, reduced, axes):
+        """Text of the last two arguments of a kernel over several axes: positions of the reduced ones as written, sizes of all."""
+        sizes = "".join(self._size_text(a) + ", " for a in axes)
+        return f"{tuple(axes.index(a) for a in reduced)}, ({sizes})"
+
+    def _size_text(self, axis):
+        if axis == SAMPLES:
+            return str(POINTS)
+        return f"n[{axis!r}]" if self.graph.axis_of[axis]["from"] == "list" else str(self.graph.check.axis_size(axis))
 
     # ---- scratch buffers and text -----------------------------------------------------------------------------------------------------
 

@@ -128,9 +128,34 @@ class OverAxes:
             return NO_VALUE
         return self.node("place", extra=(axis,), axes=frozenset((axis,)), sure=True)
 
-    def _weighted_quantile(self, axes, x, weight, share):
-        values = [self.value(t) for t in (x, weight, share)]
+    def _present(self, axes, *trees):
+        """(values, None), or (None, Absent) where one is absent or one of the axes is empty."""
+        values = [self.value(t) for t in trees]
         if any(isinstance(v, Absent) for v in values) or any(self._is_empty(a) for a in axes):
-            return self._missing(*values)
-        left = (values[0].axes | values[1].axes) - frozenset(axes)
-        return self.node("weighted_quantile", *values, extra=tuple(axes), axes=left)
+            return None, self._missing(*values)
+        return values, None
+
+    def _weighted_quantile(self, axes, x, weight, share):
+        values, missing = self._present(axes, x, weight, share)
+        if missing:
+            return missing
+        x, weight, share = values
+        left, extra = (x.axes | weight.axes) - frozenset(axes), tuple(axes)
+        ranking = self.node("ranking", x, weight, extra=extra, axes=left)       # sorted once, whatever the shares asked for
+        return self.node("quantile", ranking, share, extra=extra, axes=left | share.axes)
+
+    def _at_share(self, axes, x, weight, share):
+        values, missing = self._present(axes, x, weight, share)
+        if missing:
+            return missing
+        x, weight, share = values
+        left, extra = (weight.axes | share.axes) - frozenset(axes), tuple(axes)
+        place = self.node("share_place", weight, share, extra=extra, axes=left)     # found once, whatever is read there
+        return self.node("at_place", x, place, extra=extra, axes=left | (x.axes - frozenset(axes)))
+
+    def _spread_onto(self, onto, axes, position, weight):
+        values, missing = self._present((onto, *axes), position, weight)
+        if missing:
+            return missing
+        left = (values[0].axes | values[1].axes) - frozenset(axes) | {onto}
+        return self.node("spread_onto", *values, extra=(onto, *axes), axes=left)

@@ -14,6 +14,8 @@ FUNCTIONS = {
 # the first argument is an axis
 AXIS_FUNCTIONS = {"any_over": 2, "all_over": 2, "count_over": 2, "sum_over": 2, "least_over": 2, "greatest_over": 2, "at_least": 3,
                   "at_greatest": 3, "size_of": 1, "index_of": 1}
+# four arguments, one of which is an axis or a tuple of axes: the number of arguments, each one axis, before it
+AXES_FUNCTIONS = {"weighted_quantile": 0, "at_share": 0, "spread_onto": 1}
 
 
 class ExpressionFault(ValueError):
@@ -130,12 +132,13 @@ def _call(node):
     name, arguments = node.func.id, node.args
     if name == "lookup" and len(arguments) == 2:
         return ["lookup", dotted(arguments[0]), _tree(arguments[1])]
-    if name == "weighted_quantile" and len(arguments) == 4:
-        axes = arguments[0].elts if isinstance(arguments[0], ast.Tuple) else [arguments[0]]
-        return ["weighted_quantile", [dotted(a) for a in axes], *map(_tree, arguments[1:])]
+    if name in AXES_FUNCTIONS and len(arguments) == 4:
+        before = AXES_FUNCTIONS[name]
+        axes = arguments[before].elts if isinstance(arguments[before], ast.Tuple) else [arguments[before]]
+        return [name, *map(dotted, arguments[:before]), [dotted(a) for a in axes], *map(_tree, arguments[before + 1:])]
     expected = FUNCTIONS.get(name, AXIS_FUNCTIONS.get(name))
     if expected is None:
-        raise ExpressionFault(node, f"the function {name!r}", f"one of {', '.join(sorted([*FUNCTIONS, *AXIS_FUNCTIONS, 'lookup', 'weighted_quantile']))}")
+        raise ExpressionFault(node, f"the function {name!r}", f"one of {', '.join(sorted([*FUNCTIONS, *AXIS_FUNCTIONS, *AXES_FUNCTIONS, 'lookup']))}")
     if not arguments or (expected != "*" and len(arguments) != expected):
         raise ExpressionFault(node, f"{name} with {len(arguments)} arguments", f"{expected if expected != '*' else 'one or more'}")
     if name in AXIS_FUNCTIONS:

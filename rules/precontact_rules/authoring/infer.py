@@ -2,7 +2,7 @@
 from decimal import Decimal
 from typing import Any, NamedTuple
 
-from .expression import names_in
+from .expression import AXES_FUNCTIONS, names_in
 from .faults import nearest
 from .units import PURE, dimension
 
@@ -334,10 +334,28 @@ class Inference:
         return Type("number", PURE, frozenset([axis]))
 
     def _weighted_quantile(self, axes, x, weight, share):
+        return self._from_axes("weighted_quantile", axes, x, weight, share)
+
+    def _at_share(self, axes, x, weight, share):
+        return self._from_axes("at_share", axes, x, weight, share)
+
+    def _from_axes(self, name, axes, x, weight, share):
         for axis in axes:
             self._axis(axis)
-        types = self._real("weighted_quantile", x, weight, share)
-        return Type("number", types[0].dimension, (types[0].axes | types[1].axes) - frozenset(axes), True)
+        types = self._real(name, x, weight, share)
+        if types[2].dimension not in (ANY, PURE):
+            raise Mismatch(f"{name} at a share that is {shown(types[2].dimension)}", "a pure number between 0 and 1")
+        if types[2].axes & frozenset(axes):
+            raise Mismatch(f"{name} at a share that runs along {', '.join(sorted(types[2].axes & frozenset(axes)))}", "a share free of the axes it reduces")
+        return Type("number", types[0].dimension, types[0].axes.union(types[1].axes, types[2].axes) - frozenset(axes), True)
+
+    def _spread_onto(self, onto, axes, position, weight):
+        for axis in (onto, *axes):
+            self._axis(axis)
+        types = self._real("spread_onto", position, weight)
+        if types[0].dimension not in (ANY, PURE):
+            raise Mismatch(f"spread_onto at a position that is {shown(types[0].dimension)}", "a pure number: a place along the axis")
+        return Type("number", types[1].dimension, (types[0].axes | types[1].axes) - frozenset(axes) | {onto}, True)
 
 
 def resolved(tree, scope):
@@ -356,5 +374,5 @@ def resolved(tree, scope):
 
 
 def _is_axes(tree, part):
-    return tree[0] == "weighted_quantile" and part is tree[1]
+    return tree[0] in AXES_FUNCTIONS and part is tree[1 + AXES_FUNCTIONS[tree[0]]]
 
