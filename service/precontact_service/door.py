@@ -1,0 +1,35 @@
+"""The outermost layer: what every response carries, whatever made it, and the line that the log keeps of it."""
+from time import perf_counter
+
+from . import log
+from .trace import traceparent
+
+EDITION = "precontact.edition"        # a view that used another rule set than the latest leaves it here
+
+CONTENT_POLICY = ("default-src 'none'; style-src 'self'; img-src 'self'; base-uri 'none'; form-action 'none'; frame-ancestors 'none'")
+SECURITY = [
+    ("Content-Security-Policy", CONTENT_POLICY),
+    ("X-Content-Type-Options", "nosniff"),
+    ("Referrer-Policy", "no-referrer"),
+    ("Cross-Origin-Resource-Policy", "same-origin"),
+]
+
+
+class Door:
+    """WSGI layer around the application. The headers are lists made once; nothing here parses or copies."""
+
+    def __init__(self, application, latest, logged):
+        self._application, self._latest, self._logged = application, latest, logged
+        self._latest_headers = [latest.header, *SECURITY]
+
+    def __call__(self, environ, start_response):
+        started = perf_counter()
+
+        def start(status, headers, exc_info=None):
+            edition = environ.get(EDITION)
+            headers.extend(self._latest_headers if edition is None else [edition.header, *SECURITY])
+            if self._logged:
+                log.request(environ, status, started, (edition or self._latest).version, traceparent(environ))
+            return start_response(status, headers, exc_info)
+
+        return self._application(environ, start)

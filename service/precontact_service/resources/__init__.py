@@ -1,0 +1,1 @@
+"""One module per resource, each making its blueprint from the released rule sets."""

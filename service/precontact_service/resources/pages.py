@@ -1,0 +1,66 @@
+"""Pages for people: every operation with its examples, and what each kind of problem means. No script, nothing from elsewhere."""
+import hashlib
+from functools import lru_cache
+from pathlib import Path
+
+import orjson
+from flask import Blueprint, current_app, render_template
+
+from ..openapi import document as openapi_document
+from ..openapi import page
+from ..parameters import query
+from ..problem_types import TYPES
+from ..problems import ProblemError
+from ..reply import JSON, REVALIDATE, content_response
+
+_HTML = "text/html; charset=utf-8"
+_STYLE = Path(__file__).parent.parent / "static" / "style.css"
+
+
+def blueprint(spec, editions):
+    """Routes of the pages and of the OpenAPI document."""
+    made = Blueprint("pages", __name__, template_folder="../templates")
+
+    @lru_cache(maxsize=1)
+    def document():
+        return openapi_document.build(current_app._get_current_object(), spec, editions)
+
+    @lru_cache(maxsize=1)
+    def document_bytes():
+        return orjson.dumps(document())
+
+    @lru_cache(maxsize=1)
+    def page_bytes():
+        return render_template("api.html", **page.view(document())).encode()
+
+    @lru_cache(maxsize=len(TYPES))
+    def problem_bytes(code):
+        return render_template("problem.html", code=code, kind=TYPES[code]).encode()
+
+    @made.get("/v1/openapi.json")
+    def openapi():
+        query()
+        return _bytes(document_bytes(), JSON)
+
+    @made.get("/")
+    def api_page():
+        query()
+        return _bytes(page_bytes(), _HTML)
+
+    @made.get("/problems/<string:code>")
+    def problem_page(code):
+        query()
+        if code not in TYPES:
+            raise ProblemError("not-found", f"No kind of problem is named {code[:80]!r}; there are {', '.join(TYPES)}.")
+        return _bytes(problem_bytes(code), _HTML)
+
+    @made.get("/style.css")
+    def style():
+        query()
+        return _bytes(_STYLE.read_bytes(), "text/css; charset=utf-8")
+
+    return made
+
+
+def _bytes(content, media_type):
+    return content_response(content, media_type, f'"sha-256:{hashlib.sha256(content).hexdigest()}"', REVALIDATE)
