@@ -1,4 +1,5 @@
 """From the engine's numbers to the answer a person reads and a machine stores."""
+from .layout import Layout
 from .phrase import compile_template
 from .reported import Reader
 
@@ -18,8 +19,6 @@ class AnswerWriter:
         for number, finding in enumerate(model.findings):
             for language, text in finding["sentence"].items():
                 self._templates[number, language] = compile_template(text)
-        self._results = [f for f in sorted(model.formulas, key=lambda f: f["order"]) if f["show"] == "result"]
-        self._working = [f for f in sorted(model.formulas, key=lambda f: f["order"]) if f["show"] != "hidden"]
 
     def write(self, intake, plan, results, intervals, beyond, input_digest, language):
         """The answer document, a fresh dict."""
@@ -35,14 +34,15 @@ class AnswerWriter:
             verdict = "undetermined"
             paths = [self.model.slots[index].path for index in beyond]
             findings.insert(0, self._engine_finding("spread-leaves-range", verdict, reader, paths))
+        layout = self._layout(plan, language)
         return {
             "check": self.model.name,
             "rule_set": self._identity,
             "input_digest": input_digest,
             "verdict": verdict,
             "findings": findings,
-            "results": self._reported(plan, reader),
-            "working": self._worked(plan, reader),
+            "results": self._reported(layout, reader),
+            "working": self._worked(layout, reader),
             "assumptions": self._assumptions(plan, results, intake, language),
             "cautions": self._caution_list(plan, results, holding, language),
             "unverified": weak,
@@ -51,7 +51,7 @@ class AnswerWriter:
     # ---- findings ------------------------------------------------------------------------------------------------------------------
 
     def _decide(self, conditions, results):
-        """(number of the deciding finding, numbers of all reported findings, in order)."""
+        """(number of the deciding finding, numbers of all reported findings, that one first)."""
         decided, holding = None, []
         for number, finding in enumerate(self.model.findings):
             holds = conditions[number]
@@ -63,7 +63,7 @@ class AnswerWriter:
             elif not note and finding["verdict"] not in _SEVERE:
                 continue
             holding.append(number)
-        return decided, holding
+        return decided, [decided, *(number for number in holding if number != decided)]
 
     def _finding(self, number, reader, language):
         finding = self.model.findings[number]
@@ -100,23 +100,20 @@ class AnswerWriter:
 
     # ---- numbers -------------------------------------------------------------------------------------------------------------------
 
-    def _reported(self, plan, reader):
-        reported = {}
-        for formula in self._results:
-            output = plan.outputs[formula["name"]]
-            value = reader.result(output)
-            if value is not None:
-                reported[formula["key"]] = value
-        return reported
+    def _layout(self, plan, language):
+        layout = plan.layouts.get(language)
+        if layout is None:
+            layout = plan.layouts[language] = Layout(self.model, plan, self.texts, language)
+        return layout
 
-    def _worked(self, plan, reader):
-        working = []
-        for formula in self._working:
-            output = plan.outputs[formula["name"]]
-            if output.absent is None:
-                working.append({"name": formula["name"], "value": reader.plain(output), "unit": formula["unit"],
-                                "formula": formula["text"], "source": formula["source"]})
-        return working
+    @staticmethod
+    def _reported(layout, reader):
+        return {key: reader.result(output) if fixed is None else fixed for key, output, fixed in layout.results}
+
+    @staticmethod
+    def _worked(layout, reader):
+        return [{"name": name, "value": reader.plain(output), "unit": unit, "formula": text, "source": source}
+                for name, unit, text, source, output in layout.working]
 
     # ---- what was assumed, what to mind ------------------------------------------------------------------------------------------------
 

@@ -12,12 +12,17 @@ import math
 
 import numpy as np
 
-from .exact_math import NAN, exp_array, fold_sum, sin_array, sin_cos_array
+from .exact_math import NAN, exp_array, fold_sum, normal_score, sin_array, sin_cos_array
+from .least_squares import cholesky, solved
 from .points import POINTS
 
 # The 95 % coverage interval (JCGM 101 cl. 7.7) is linear between order statistics at N p - 1/2, counted from 0.
 _ENDS = (0.025, 0.975)
 _PLACES = tuple((int(POINTS * p - 0.5), POINTS * p - 0.5 - int(POINTS * p - 0.5)) for p in _ENDS)
+
+# The outer tenth of the order statistics, fitted by a cubic; a fitted end stays within so many places of the plain one.
+_TAIL, _NEAR = POINTS // 10, 25
+_LOW_AT = _PLACES[0][0]
 
 # Midpoints of the inversion integral; a normal term counts as ending at 6 standard deviations (2e-9 lies beyond).
 _NODES = np.arange(64) + 0.5
@@ -28,18 +33,20 @@ NO_ENDS = (NAN, NAN)
 
 def coverage_ends(arrays, drawn):
     """[(low, high), ...] of the probabilistically symmetric 95 % interval of each 1-d array of samples; NaN where a sample has no value."""
-    found = []
-    for x in arrays:
-        ordered = np.sort(x)                 # sorts NaN to the end
-        finite = ordered[-1] - ordered[0] < math.inf
-        found.append([ordered, *_plain_ends(ordered)] if finite else None)
-    usable = [k for k, plain in enumerate(found) if plain]
-    if len(drawn.forms) > 1 and usable:      # with one uncertain input the points are already even
+    found = [NO_ENDS] * len(arrays)
+    ordered = [np.sort(x) for x in arrays]                   # sorts NaN to the end
+    usable = [k for k, row in enumerate(ordered) if row[-1] - row[0] < math.inf]
+    if len(drawn.forms) < 2:                                 # with one uncertain input the points are already even
+        for k in usable:
+            found[k] = _plain_ends(ordered[k])
+    elif usable:
+        ends = _smooth_ends([ordered[k] for k in usable])
         lines = [_Line(*drawn.slopes(arrays[k]), drawn) for k in usable]
-        lines = [(k, line) for k, line in zip(usable, lines) if line.usable]
-        if lines:
-            _correct(found, lines, drawn)
-    return [NO_ENDS if plain is None else (plain[1], plain[2]) for plain in found]
+        _correct(ends, [(i, line) for i, line in enumerate(lines) if line.usable], drawn)
+        for k, (low, high) in zip(usable, ends):
+            least, most = float(ordered[k][0]), float(ordered[k][-1])
+            found[k] = (min(max(low, least), most), min(max(high, least), most))
+    return found
 
 
 def ends_of(x, drawn):
@@ -51,16 +58,38 @@ def ends_of(x, drawn):
 
 
 def _plain_ends(ordered):
-    return [float(ordered[at] + (ordered[at + 1] - ordered[at]) * part) for at, part in _PLACES]
+    return tuple(float(ordered[at] + (ordered[at + 1] - ordered[at]) * part) for at, part in _PLACES)
 
 
-def _correct(found, lines, drawn):
-    """Move the plain ends by what plain ends of the linear stand-ins are wrong by, never past the outermost sample."""
-    near = []
-    for _, line in lines:
-        values = line.values(drawn)
-        values.sort()
-        near.append(_plain_ends(values))
+def _smooth_ends(rows):
+    """[[low, high], ...] of sorted rows: a cubic in the normal score, fitted to the outer tenth of the order statistics.
+
+    It averages the unevenness of single order statistics away; it is kept within _NEAR of them, for results whose distribution has a step.
+    """
+    tails = np.array([row[:_TAIL] for row in rows] + [row[:-_TAIL - 1:-1] for row in rows])
+    fitted = fold_sum(tails * _TAIL_WEIGHTS, 1).tolist()
+    ends = []
+    for k, row in enumerate(rows):
+        low = min(max(fitted[k], float(row[_LOW_AT - _NEAR])), float(row[_LOW_AT + _NEAR]))
+        high = min(max(fitted[len(rows) + k], float(row[-1 - _LOW_AT - _NEAR])), float(row[-1 - _LOW_AT + _NEAR]))
+        ends.append([low, high])
+    return ends
+
+
+def _tail_weights():
+    """Weights of the outer order statistics whose sum is the fitted cubic at 2.5 %."""
+    scores = np.array([normal_score((i + 0.5) / POINTS) for i in range(_TAIL)]) - normal_score(_ENDS[0])
+    powers = [np.ones(_TAIL), scores, scores * scores, scores * scores * scores]
+    gram = [[float(fold_sum(a * b, 0)) for b in powers] for a in powers]
+    coefficients = solved(cholesky(gram), [1.0, 0.0, 0.0, 0.0])
+    return powers[0] * coefficients[0] + powers[1] * coefficients[1] + powers[2] * coefficients[2] + powers[3] * coefficients[3]
+
+
+def _correct(ends, lines, drawn):
+    """Move the ends by what the same estimate of the linear stand-ins is wrong by."""
+    if not lines:
+        return
+    near = _smooth_ends([np.sort(line.values(drawn)) for _, line in lines])
     steps = np.array([math.pi / line.reach for _, line in lines])
     weights = _characteristic([line for _, line in lines], steps)
     guess = [0.5 * (high - low) for low, high in near]
@@ -74,10 +103,9 @@ def _correct(found, lines, drawn):
         # Newton's step to the upper quantile of L, with the curvature of a normal density as the second-order term
         step = ((_ENDS[1] - 0.5) * math.pi - below[i]) / slope
         step += step * step * guess[i] / (2.0 * line.variance)
-        end, plain = guess[i] + step, found[k]
-        least, most = float(plain[0][0]), float(plain[0][-1])
-        plain[1] = min(max(plain[1] - end - near[i][0], least), most)
-        plain[2] = min(max(plain[2] + end - near[i][1], least), most)
+        end = guess[i] + step
+        ends[k][0] += -end - near[i][0]
+        ends[k][1] += end - near[i][1]
 
 
 def plain_share(holds, known):
@@ -162,3 +190,6 @@ def _characteristic(lines, steps):
 
 
 _TINY = 1e-30       # sin x / x is exactly 1 here
+
+
+_TAIL_WEIGHTS = _tail_weights()

@@ -27,6 +27,24 @@ class Arithmetic:
             return Pair(self.node("neg", a.re), self.node("neg", a.im))
         return self.node("neg", a)
 
+    # Adding zero and multiplying by one change nothing, so they are not nodes: real numbers made complex cost no more than they must.
+    # (A negative zero would become zero; it cannot be told from zero by any comparison, and is written as 0.)
+
+    def _is(self, node, value):
+        return node.op == "number" and node.extra[0] == value
+
+    def _sum(self, op, a, b):
+        if self._is(b, 0.0):
+            return a
+        if op == "add" and self._is(a, 0.0):
+            return b
+        return self.node(op, a, b)
+
+    def _times(self, a, b):
+        if self._is(a, 1.0):
+            return b
+        return a if self._is(b, 1.0) else self.node("mul", a, b)
+
     def _add(self, a, b, op="add"):
         both, missing = self._both(a, b)
         if missing:
@@ -34,8 +52,8 @@ class Arithmetic:
         a, b = both
         if isinstance(a, Pair) or isinstance(b, Pair):
             a, b = self._pair(a), self._pair(b)
-            return Pair(self.node(op, a.re, b.re), self.node(op, a.im, b.im))
-        return self.node(op, a, b)
+            return Pair(self._sum(op, a.re, b.re), self._sum(op, a.im, b.im))
+        return self._sum(op, a, b)
 
     def _sub(self, a, b):
         return self._add(a, b, "sub")
@@ -48,14 +66,14 @@ class Arithmetic:
         return missing or self._product(*both)
 
     def _product(self, a, b):
-        n = self.node
+        times, total = self._times, self._sum
         if isinstance(a, Pair) and isinstance(b, Pair):
-            return Pair(n("sub", n("mul", a.re, b.re), n("mul", a.im, b.im)), n("add", n("mul", a.re, b.im), n("mul", a.im, b.re)))
+            return Pair(total("sub", times(a.re, b.re), times(a.im, b.im)), total("add", times(a.re, b.im), times(a.im, b.re)))
         if isinstance(a, Pair):
-            return Pair(n("mul", a.re, b), n("mul", a.im, b))
+            return Pair(times(a.re, b), times(a.im, b))
         if isinstance(b, Pair):
-            return Pair(n("mul", a, b.re), n("mul", a, b.im))
-        return n("mul", a, b)
+            return Pair(times(a, b.re), times(a, b.im))
+        return times(a, b)
 
     def _div(self, a, b):
         both, missing = self._both(a, b)
@@ -65,7 +83,7 @@ class Arithmetic:
         n = self.node
         if isinstance(b, Pair):
             top = self._product(a, Pair(b.re, n("neg", b.im)))
-            size = n("add", n("mul", b.re, b.re), n("mul", b.im, b.im))
+            size = self._size_squared(b)
             return Pair(n("div", top.re, size), n("div", top.im, size))
         if isinstance(a, Pair):
             return Pair(n("div", a.re, b), n("div", a.im, b))
@@ -100,7 +118,7 @@ class Arithmetic:
         return a if isinstance(a, Absent) else self.node("abs", a)
 
     def _size_squared(self, a):
-        return self.node("add", self.node("mul", a.re, a.re), self.node("mul", a.im, a.im))
+        return self._sum("add", self.node("mul", a.re, a.re), self.node("mul", a.im, a.im))
 
     def _abs_squared(self, a):
         a = self.value(a)

@@ -31,10 +31,11 @@ class Output:
     Absent, `hidden` the axes of a grid that is not reported.
     """
 
-    __slots__ = ("formula", "place", "imaginary", "samples", "fixed", "absent", "hidden", "axes")
+    __slots__ = ("formula", "place", "imaginary", "samples", "fixed", "absent", "hidden", "axes", "factor", "names")
 
-    def __init__(self, formula):
-        self.formula = formula
+    def __init__(self, formula, units):
+        self.formula, self.names = formula, formula.get("names")
+        self.factor = units[formula["unit"]]["factor"] if formula["unit"] else 1
         self.place = self.imaginary = self.samples = self.fixed = self.absent = None
         self.hidden, self.axes = (), ()
 
@@ -43,7 +44,7 @@ class Plan:
     """Run with `run(values, sampled, uniforms, drawn, sizes)`; read through `conditions`, `outputs`, `extra_conditions`."""
 
     def __init__(self, model, states, filled):
-        self.model = model
+        self.model, self.states, self.layouts = model, states, {}
         graph = Graph(model.bundle, model, states, filled)
         for formula in model.formulas:     # in dependency order, so that no recursion grows deep
             graph.formula(formula["name"])
@@ -75,7 +76,7 @@ class Plan:
         return value if isinstance(value, bool) else self._want(value)
 
     def _output(self, formula):
-        output, value = Output(formula), self._graph.values[formula["name"]]
+        output, value = Output(formula, self.model.bundle["units"]), self._graph.values[formula["name"]]
         if isinstance(value, Absent):
             output.absent = value
         elif isinstance(value, (bool, Key)):
@@ -97,7 +98,9 @@ class Plan:
             output.imaginary = self._want(parts[1])
         elif SAMPLES in axes and output.formula["show"] == "result" and not parts[0].boolean:
             output.samples = self._want(parts[0], "s")
-            (self._flat if axes == {SAMPLES} else self._deep).append(output.samples)
+            group = self._flat if axes == {SAMPLES} else self._deep
+            if output.samples not in group:
+                group.append(output.samples)
 
     # ---- running -----------------------------------------------------------------------------------------------------------------------
 

@@ -6,6 +6,7 @@ everywhere.  Every dimension holds the same N values in another order; the norma
 import numpy as np
 
 from . import exact_math
+from .least_squares import cholesky, solved
 
 POINTS = 4096
 SCORE_LIMIT = exact_math.normal_score((POINTS - 0.5) / POINTS)   # the largest normal score in the set
@@ -74,33 +75,14 @@ class Drawn:
             columns = [c[self._CHOSEN] for c in coordinates]
             self._means = [float(exact_math.fold_sum(c, 0)) / SUBSET for c in columns]
             self._subset = np.array([c - mean for c, mean in zip(columns, self._means)]).T.copy()
-            self._factor = self._cholesky()
-
-    def _cholesky(self):
-        gram = [[float(exact_math.fold_sum(a * b, 0)) for b in self._subset.T] for a in self._subset.T]
-        factor = [[0.0] * len(gram) for _ in gram]
-        for i, row in enumerate(gram):
-            for j in range(i + 1):
-                rest = row[j]
-                for k in range(j):
-                    rest -= factor[i][k] * factor[j][k]
-                factor[i][j] = exact_math.sqrt(rest) if i == j else rest / factor[j][j]
-        return factor
+            self._factor = cholesky([[float(exact_math.fold_sum(a * b, 0)) for b in self._subset.T] for a in self._subset.T])
 
     def slopes(self, x):
         """(value at the origin, slopes) of the linear function of the coordinates that fits the samples `x` best on the subset."""
         chosen = x[self._CHOSEN]
         centre = float(exact_math.fold_sum(chosen, 0)) / SUBSET
         sums = exact_math.fold_sum(self._subset * (chosen - centre)[:, None], 0).tolist()
-        factor, count = self._factor, len(sums)
-        for i in range(count):
-            for k in range(i):
-                sums[i] -= factor[i][k] * sums[k]
-            sums[i] /= factor[i][i]
-        for i in range(count - 1, -1, -1):
-            for k in range(i + 1, count):
-                sums[i] -= factor[k][i] * sums[k]
-            sums[i] /= factor[i][i]
-        for mean, slope in zip(self._means, sums):
+        slopes = solved(self._factor, sums)
+        for mean, slope in zip(self._means, slopes):
             centre -= mean * slope
-        return centre, sums
+        return centre, slopes

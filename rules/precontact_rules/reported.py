@@ -5,6 +5,8 @@ import numpy as np
 
 from .phrase import fill, number_text
 
+_LEAST, _MOST = -math.inf, math.inf      # a number strictly between them is finite; NaN is between nothing
+
 
 class Reader:
     """The view of one request's results that the answer writer and the sentences look through."""
@@ -17,47 +19,46 @@ class Reader:
     # ---- results -------------------------------------------------------------------------------------------------------------------
 
     def result(self, output):
-        """The public form of a result, or None where it does not belong to this branch of the check."""
-        formula = output.formula
-        if output.absent is not None:
-            reason = self._why_absent(output)
-            return None if reason is None else {"value": None, "reason": reason}
-        if output.place is None:
-            return {"value": output.fixed}
-        low, high = (None, None) if output.samples is None else self.intervals[output.samples]
+        """The public form of a result whose value the numbers decide."""
         value = self.results[output.place]
+        if output.samples is None and not output.axes:
+            return self._one(value, None, None, output)
+        low, high = (None, None) if output.samples is None else self.intervals[output.samples]
         if output.axes:
-            return self._along(output.axes, np.asarray(value), low, high, formula)
-        return self._one(value, low, high, formula)
+            return self._along(output.axes, np.asarray(value), low, high, output)
+        return self._one(value, low, high, output)
 
-    def _along(self, axes, value, low, high, formula):
+    def _along(self, axes, value, low, high, output):
         axis, rest = axes[0], axes[1:]
         items = []
         for place in range(value.shape[0]):
             ends = (None, None) if low is None else (np.asarray(low)[place], np.asarray(high)[place])
-            item = self._along(rest, value[place], *ends, formula) if rest else self._one(value[place].item(), *ends, formula)
+            item = self._along(rest, value[place], *ends, output) if rest else self._one(self._scalar(value[place]), *ends, output)
             if self.model.axis_from(axis) == "entries":
                 item = {"id": self.model.entry_ids(axis)[place], **(item if isinstance(item, dict) else {"items": item})}
             items.append(item)
         return items
 
-    def _one(self, value, low, high, formula):
-        if isinstance(value, bool):
+    def _one(self, value, low, high, output):
+        if value is True or value is False:
             return {"value": value}
-        if not math.isfinite(value):
-            return {"value": None, "reason": self._no_value(formula)}
-        if "names" in formula:
-            return self._named(formula["names"], int(value))
-        unit = formula["unit"]
+        if not _LEAST < value < _MOST:
+            return {"value": None, "reason": self._no_value(output.formula)}
+        if output.names:
+            return self._named(output.names, int(value))
         if low is None:
-            return {"value": self._scaled(value, unit)}
+            return {"value": self._scaled(value, output.factor)}
         low, high = float(low), float(high)
-        if not (math.isfinite(low) and math.isfinite(high)):
-            return {"value": self._scaled(value, unit), "low": None, "high": None, "reason": self.texts["partly-no-value"][self.language]}
-        return {"value": self._scaled(value, unit), "low": self._scaled(low, unit), "high": self._scaled(high, unit)}
+        if not (_LEAST < low and high < _MOST):
+            return {"value": self._scaled(value, output.factor), "low": None, "high": None, "reason": self.texts["partly-no-value"][self.language]}
+        return {"value": self._scaled(value, output.factor), "low": self._scaled(low, output.factor), "high": self._scaled(high, output.factor)}
 
-    def _scaled(self, value, unit):
-        factor = self.units[unit]["factor"]
+    @staticmethod
+    def _scalar(value):
+        return bool(value) if value.dtype == bool else float(value)
+
+    @staticmethod
+    def _scaled(value, factor):
         return (value if factor == 1 else value / factor) + 0.0    # + 0.0 turns a negative zero into zero
 
     def _named(self, axis, place):
@@ -83,37 +84,26 @@ class Reader:
     def _no_value(self, formula):
         return formula["absent_because"][self.language] if "absent_because" in formula else self.texts["no-value"][self.language]
 
-    def _why_absent(self, output):
-        applicable = self.model.applicable(self.intake.states)
-        if any(path not in applicable for path in output.absent.needs):
-            return None
-        if not output.absent.needs:
-            return self._no_value(output.formula) if "absent_because" in output.formula else None
-        keys = [self.model.slots[self.model.slot_index[path]].pointer.replace("/*", "") for path in output.absent.needs]
-        return self.texts["needs-input"][self.language].replace("{names}", ", ".join(keys))
-
     # ---- working -------------------------------------------------------------------------------------------------------------------
 
     def plain(self, output):
         """A formula's value for the working: a number, boolean, list, complex as an object, or null."""
-        if output.hidden:
-            return None
         if output.place is None:
-            return output.fixed
-        value, unit = self.results[output.place], output.formula["unit"]
+            return None if output.hidden else output.fixed
+        value = self.results[output.place]
         if output.imaginary is not None:
-            return {"re": self._bare(value, unit), "im": self._bare(self.results[output.imaginary], unit)}
-        return self._bare(value, unit)
+            return {"re": self._bare(value, output.factor), "im": self._bare(self.results[output.imaginary], output.factor)}
+        return self._bare(value, output.factor)
 
-    def _bare(self, value, unit):
-        if isinstance(value, bool):
+    def _bare(self, value, factor):
+        if type(value) is float:
+            return (value if factor == 1 else value / factor) + 0.0 if _LEAST < value < _MOST else None
+        if value is True or value is False:
             return value
-        if isinstance(value, (float, int)):
-            return self._scaled(value, unit) if math.isfinite(value) else None
         value = np.asarray(value)
         if value.ndim:
-            return [self._bare(v, unit) for v in value]
-        return self._bare(value.item(), unit)
+            return [self._bare(v, factor) for v in value]
+        return self._bare(self._scalar(value), factor)
 
     # ---- sentences -----------------------------------------------------------------------------------------------------------------
 
