@@ -7,8 +7,10 @@ from precontact_rules import released
 from . import problems
 from .door import Door
 from .editions import Editions
+from .express import Express
 from .intake import LIMIT
 from .openapi.api import DocumentedApi
+from .questions import questions
 from .resources import catalogues, checks, health, pages, rule_sets
 
 
@@ -33,8 +35,11 @@ def create_app(folder=released.FOLDER, access_log=True):
     editions = Editions(folder)
     problems.register(app)
     api = DocumentedApi(app, editions)
-    for resource in (checks, rule_sets, catalogues, health):
+    asked = questions(editions)
+    api.register_blueprint(checks.blueprint(editions, asked))
+    for resource in (rule_sets, catalogues, health):
         api.register_blueprint(resource.blueprint(editions))
     app.register_blueprint(pages.blueprint(api.spec, editions))
-    app.wsgi_app = Door(app.wsgi_app, editions.latest, access_log)
+    express = Express(app.wsgi_app, {f"/v1/checks/{name}": question for name, question in asked.items()})
+    app.wsgi_app = Door(express, editions.latest, access_log)
     return app

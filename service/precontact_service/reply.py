@@ -1,25 +1,15 @@
-"""Successful responses: JSON bytes with their language, validators and caching."""
+"""Responses to a GET: bytes with their language, validators and caching."""
 import hashlib
 
 import orjson
 from flask import Response, request
 
-from .language import LANGUAGES, chosen
+from .language import chosen
 from .problems import ProblemError
 
 JSON = "application/json"
 REVALIDATE = "no-cache"                                   # may change with a release: ask again, and mostly hear 304
 FOR_EVER = "public, max-age=31536000, immutable"
-
-_ANSWER_HEADERS = {
-    language: [("Content-Type", JSON), ("Content-Language", language), ("Vary", "Accept-Language"), ("Cache-Control", "no-store")]
-    for language in LANGUAGES
-}
-
-
-def answer(data, language):
-    """The response to a question: 200, one line of JSON."""
-    return Response(orjson.dumps(data), 200, _ANSWER_HEADERS[language])
 
 
 def resource(data, language=None, caching=REVALIDATE):

@@ -1,5 +1,6 @@
 """flask-smorest's Api, mended where the document it makes would be wrong or untidy."""
-from apispec.ext.marshmallow import MarshmallowPlugin, resolver
+from apispec.ext.marshmallow import MarshmallowPlugin
+from apispec.ext.marshmallow.common import resolve_schema_cls
 from flask_smorest import Api
 from precontact_rules import json_schema
 
@@ -16,7 +17,7 @@ Nothing that this service answers says that a conductor is dead or that work on 
 
 
 def _component_name(schema):
-    return resolver.resolve_schema_cls(schema).__name__
+    return resolve_schema_cls(schema).__name__
 
 
 class DocumentedApi(Api):

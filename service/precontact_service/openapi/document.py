@@ -11,5 +11,7 @@ def build(app, api_spec, editions):
     for item in document["paths"].values():
         for method in [m for m in item if m not in _METHODS]:
             del item[method]
+        for operation in item.values():
+            operation["responses"].pop("default", None)      # flask-smorest promises an error body that is never sent
     add_examples(document, app, editions)
     return document
