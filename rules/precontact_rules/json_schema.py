@@ -8,7 +8,7 @@ EXACT_WHOLE = 2 ** 53
 
 def components(bundle):
     """{component name: schema} for every request body, catalogue reference and answer of the bundle's checks."""
-    made = {}
+    made = {"Result": _result()}
     for kind in bundle["kinds"]:
         made[_camel(kind) + "Reference"] = _reference(bundle, kind)
     for name in bundle["checks"]:
@@ -145,7 +145,7 @@ def _reference(bundle, kind):
     overridden = {**data, "properties": {"id": known, **{k: _optional(v) for k, v in data["properties"].items()}}, "required": ["id"]}
     spelled = {**data, "properties": {"id": {"type": "null"}, **data["properties"]}}
     options = ([known, overridden] if ids else []) + [spelled]
-    return {"description": f"{bundle['kinds'][kind]['title']['en']}: an id of the catalogue, an id with other values for some fields, or the data itself", "oneOf": options}
+    return {"description": f"{bundle['kinds'][kind]['title']['en']}: an id of the catalogue, an id with other values for some fields, or the data itself", "anyOf": options}
 
 
 def _optional(schema):
@@ -161,7 +161,7 @@ def _optional(schema):
 
 def answer_schema(bundle, name):
     """The answer of a check; every object is open, so that releases can add."""
-    results = {f["key"]: {**_result(), "x-unit": f["unit"], "description": f["meaning"]["en"]} for f in bundle["checks"][name]["formulas"] if f["show"] == "result"}
+    results = {f["key"]: {"$ref": "#/components/schemas/Result", "x-unit": f["unit"], "description": f["meaning"]["en"]} for f in bundle["checks"][name]["formulas"] if f["show"] == "result"}
     text, strings = {"type": "string"}, {"type": "object"}
     return {
         "type": "object", "required": ["check", "rule_set", "input_digest", "verdict", "findings", "results", "working", "assumptions", "cautions", "unverified"],
@@ -184,7 +184,8 @@ def _result():
     one = {"type": "object", "required": ["value"], "properties": {
         "value": {"type": ["number", "boolean", "string", "null"]}, "low": {"type": ["number", "null"]}, "high": {"type": ["number", "null"]},
         "reason": {"type": "string"}, "title": {"type": "string"}, "id": {"type": "string"}}}
-    return {"oneOf": [one, {"type": "array"}]}
+    return {"description": "A value, with the ends of its interval where it is uncertain, or null with the reason; a list of them where the question had a list",
+            "oneOf": [one, {"type": "array", "items": {"$ref": "#/components/schemas/Result"}}]}
 
 
 # ---- description ---------------------------------------------------------------------------------------------------------------------------

@@ -1,7 +1,9 @@
 """The application factory."""
+from functools import lru_cache, partial
+
+import orjson
 from flask import Flask
 from flask.json.provider import JSONProvider
-import orjson
 from precontact_rules import released
 
 from . import problems
@@ -9,6 +11,7 @@ from .door import Door
 from .editions import Editions
 from .express import Express
 from .intake import LIMIT
+from .openapi import document as openapi_document
 from .openapi.api import DocumentedApi
 from .questions import questions
 from .resources import catalogues, checks, health, pages, rule_sets
@@ -39,7 +42,8 @@ def create_app(folder=released.FOLDER, access_log=True):
     api.register_blueprint(checks.blueprint(editions, asked))
     for resource in (rule_sets, catalogues, health):
         api.register_blueprint(resource.blueprint(editions))
-    app.register_blueprint(pages.blueprint(api.spec, editions))
+    document = app.extensions["precontact-document"] = lru_cache(maxsize=1)(partial(openapi_document.build, app, api.spec, editions))
+    app.register_blueprint(pages.blueprint(document))
     express = Express(app.wsgi_app, {f"/v1/checks/{name}": question for name, question in asked.items()})
     app.wsgi_app = Door(express, editions.latest, access_log)
     return app

@@ -28,7 +28,7 @@ class DocumentedApi(Api):
         self._editions = editions
         super().__init__(app, spec_kwargs={
             "marshmallow_plugin": MarshmallowPlugin(schema_name_resolver=_component_name),
-            "info": {"description": _DESCRIPTION, "license": {"name": "Proprietary", "identifier": "LicenseRef-Proprietary"}},
+            "info": {"description": _DESCRIPTION, "contact": {"name": "Precontact maintainers"}, "license": {"name": "Proprietary", "identifier": "LicenseRef-Proprietary"}},
             "servers": [{"url": "/", "description": "The service that serves this document"}],
             "security": [],
         })

@@ -17,6 +17,7 @@ def _known(editions):
 def listing(made, view, editions):
     """GET /v1/catalogues."""
     return documented(made, view, operationId="listCatalogues", summary="What a question may name by id",
+                      description="Every catalogue of the rule set.",
                       parameters=[ACCEPT_LANGUAGE, pin_parameter(editions)],
                       responses={**found("Names and titles", CatalogueList, headers=_HEADERS), **unchanged(), **problems(422)})
 
@@ -24,6 +25,7 @@ def listing(made, view, editions):
 def one(made, view, editions):
     """GET /v1/catalogues/<catalogue>."""
     return documented(made, view, operationId="getCatalogue", summary="One catalogue with all its entries",
+                      description="Each entry in the units of its keys, with the origin of every value.",
                       parameters=[path_parameter("catalogue", "Name of a catalogue", _known(editions)[0]), ACCEPT_LANGUAGE, pin_parameter(editions)],
                       responses={**found("The entries", Catalogue, headers=_HEADERS), **unchanged(), **problems(404, 422)})
 
@@ -32,6 +34,7 @@ def entry(made, view, editions):
     """GET /v1/catalogues/<catalogue>/<id>."""
     catalogue, id_ = _known(editions)
     return documented(made, view, operationId="getEntry", summary="One entry, with the origin of every value",
+                      description="Its `data` may be sent in a question, changed or not; so may its id.",
                       parameters=[path_parameter("catalogue", "Name of a catalogue", catalogue), path_parameter("id", "Id of an entry", id_),
                                   ACCEPT_LANGUAGE, pin_parameter(editions)],
                       responses={**found("The entry", EntryAlone, headers=_HEADERS), **unchanged(), **problems(404, 422)})

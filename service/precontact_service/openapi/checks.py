@@ -13,7 +13,7 @@ def component(check, part):
 def listing(made, view, editions):
     """GET /v1/checks."""
     return documented(
-        made, view, operationId="listChecks", summary="The questions that can be asked",
+        made, view, operationId="listChecks", summary="The questions that can be asked", description="Name, title and question of every check of the rule set.",
         parameters=[ACCEPT_LANGUAGE, pin_parameter(editions)],
         responses={**found("Names and questions", CheckList, headers={**_ETAG, "Content-Language": LANGUAGE_HEADER}), **unchanged(), **problems(422)})
 
@@ -23,6 +23,7 @@ def description(made, view, editions, name):
     title = editions.latest.rule_set.data["checks"][name]["title"]["en"]
     return documented(
         made, view, operationId=component(name, "Description"), summary=f"{title}: what is asked and answered",
+        description="Read from the rule set: inputs with units, ranges and choices, catalogue fields, results with their formulas, findings.",
         parameters=[pin_parameter(editions)],
         responses={**found("Inputs, results and findings", CheckDescription, headers=_ETAG), **unchanged(), **problems(422)})
 

@@ -2,10 +2,11 @@
 from .examples import add_examples
 
 _METHODS = ("get", "post")
+_PREFIX = "#/components/schemas/"
 
 
 def build(app, api_spec, editions):
-    """The document of `app` with its executed examples, a dict."""
+    """(document of `app` with its executed examples, {case id: bytes} of the answers kept beside it)."""
     document = api_spec.to_dict()
     document["paths"] = dict(sorted(document["paths"].items()))
     for item in document["paths"].values():
@@ -13,5 +14,22 @@ def build(app, api_spec, editions):
             del item[method]
         for operation in item.values():
             operation["responses"].pop("default", None)      # flask-smorest promises an error body that is never sent
-    add_examples(document, app, editions)
-    return document
+    _drop_unused(document)
+    return document, add_examples(document, app, editions)
+
+
+def _drop_unused(document):
+    """Keep those schemas that an operation reaches; a kind that no check refers to has none."""
+    schemas = document["components"]["schemas"]
+    reached, queue = set(), [document["paths"], document["components"]["responses"]]
+    while queue:
+        value = queue.pop()
+        if isinstance(value, dict):
+            name = str(value.get("$ref", "")).removeprefix(_PREFIX)
+            if name in schemas and name not in reached:
+                reached.add(name)
+                queue.append(schemas[name])
+            queue.extend(value.values())
+        elif isinstance(value, list):
+            queue.extend(value)
+    document["components"]["schemas"] = {name: schema for name, schema in sorted(schemas.items()) if name in reached}

@@ -4,19 +4,21 @@ import orjson
 from .operations import PROBLEM_NAMES
 
 LONGEST = 20_000        # bytes of a response shown in the document; a longer one is shown by its address
+FOLDER = "examples"     # beside the document, where it is served and where it is kept
 _JSON = "application/json"
 
 
 def add_examples(document, app, editions):
-    """Put the examples into `document`, in place."""
-    client = app.test_client()
+    """Put the examples into `document`, in place. Returns {case id: bytes} of those answers that it shows by address only."""
+    client, apart = app.test_client(), {}
     for path, item in document["paths"].items():
         if "get" in item:
             _add_get(item["get"], _filled(path, item["get"]), client)
     rule_set = editions.latest.rule_set
     for check in rule_set.check_names:
-        _add_questions(document["paths"][f"/v1/checks/{check}"]["post"], check, cases_shown(rule_set, check), client)
+        apart.update(_add_questions(document["paths"][f"/v1/checks/{check}"]["post"], check, cases_shown(rule_set, check), client))
     _add_problems(document["components"]["responses"], rule_set, client)
+    return apart
 
 
 def cases_shown(rule_set, check):
@@ -47,16 +49,23 @@ def _add_get(operation, address, client):
 
 
 def _add_questions(operation, check, cases, client):
-    requests, responses = {}, {}
+    requests, responses, apart, verdicts = {}, {}, {}, set()
     for case in cases:
+        name, verdict = case["id"], case["answer"]["verdict"]
         response = client.post(f"/v1/checks/{check}", data=orjson.dumps(case["input"]), content_type=_JSON)
-        assert response.status_code == 200, (case["id"], response.text[:300])
-        about = case["about"] if isinstance(case["about"], str) else case["about"]["en"]
-        requests[case["id"]] = {"summary": about, "value": case["input"]}
-        responses[case["id"]] = {"summary": f"{case['answer']['verdict']}: {', '.join(case['answer']['findings'])}", "value": orjson.loads(response.data)}
+        assert response.status_code == 200, (name, response.text[:300])
+        requests[name] = {"summary": case["about"] if isinstance(case["about"], str) else case["about"]["en"], "value": case["input"]}
+        responses[name] = {"summary": f"{verdict}: {', '.join(case['answer']['findings'])}"}
+        if verdict in verdicts:
+            responses[name]["externalValue"] = f"{FOLDER}/{name}.json"
+            apart[name] = response.data
+        else:                                # one whole answer for each verdict keeps the document readable
+            responses[name]["value"] = orjson.loads(response.data)
+            verdicts.add(verdict)
     if cases:
         operation["requestBody"]["content"][_JSON]["examples"] = requests
         operation["responses"]["200"]["content"][_JSON]["examples"] = responses
+    return apart
 
 
 def _add_problems(responses, rule_set, client):

@@ -34,9 +34,14 @@ def _examples(path, method, operation):
         request = asked.get(name)
         address = path if request else response["summary"].removeprefix("GET ")
         shown.append({"title": request["summary"] if request else "", "outcome": response["summary"] if request else "",
-                      "command": _command(address, request and request["value"]), "long": response.get("externalValue"),
+                      "command": _command(address, request and request["value"]), "long": _address(response.get("externalValue")),
                       "answer": None if "externalValue" in response else json.dumps(response["value"], indent=2, ensure_ascii=False)})
     return shown
+
+
+def _address(reference):
+    """An example's address as seen from the page, not from the document."""
+    return reference if reference is None or reference.startswith("/") else f"/v1/{reference}"
 
 
 def _command(address, body):

@@ -13,6 +13,7 @@ def _name(editions):
 def listing(made, view, editions):
     """GET /v1/rule-sets."""
     return documented(made, view, operationId="listRuleSets", summary="Every released rule set",
+                      description="In the order of release. None is ever changed or withdrawn.",
                       responses={**found("Versions and digests", RuleSetList, headers=_ETAG), **unchanged(), **problems(422)})
 
 

@@ -1,6 +1,8 @@
 """Response bodies that the rule set does not describe itself, as marshmallow schemas. All open: a release may add members."""
 from marshmallow import INCLUDE, Schema, fields, validate
 
+_MOST = 2 ** 31 - 1
+
 
 class Open(Schema):
     """Base of every response: unknown members are possible."""
@@ -16,7 +18,7 @@ def text(description, **more):
 
 def number(description):
     """A required count."""
-    return fields.Integer(required=True, validate=validate.Range(min=0), metadata={"description": description})
+    return fields.Integer(required=True, validate=validate.Range(min=0, max=_MOST), metadata={"description": description, "format": "int32"})
 
 
 def many(inner, description):
@@ -38,7 +40,7 @@ class Problem(Open):
 
     type = text("Kind of problem, an address that explains it", format="uri-reference", examples=["/problems/invalid-input"])
     title = text("The kind in words")
-    status = fields.Integer(required=True, validate=validate.Range(min=400, max=599), metadata={"description": "The HTTP status"})
+    status = fields.Integer(required=True, validate=validate.Range(min=400, max=599), metadata={"description": "The HTTP status", "format": "int32"})
     detail = text("This case in words")
     errors = fields.List(fields.Nested(Fault), metadata={"description": "Every fault found"})
     traceparent = fields.String(metadata={"description": "The caller's trace context, echoed"})

@@ -4,9 +4,8 @@ from functools import lru_cache
 from pathlib import Path
 
 import orjson
-from flask import Blueprint, current_app, render_template
+from flask import Blueprint, render_template
 
-from ..openapi import document as openapi_document
 from ..openapi import page
 from ..parameters import query
 from ..problem_types import TYPES
@@ -17,21 +16,17 @@ _HTML = "text/html; charset=utf-8"
 _STYLE = Path(__file__).parent.parent / "static" / "style.css"
 
 
-def blueprint(spec, editions):
-    """Routes of the pages and of the OpenAPI document."""
+def blueprint(document):
+    """Routes of the pages and of the OpenAPI document; `document()` gives it with the answers kept beside it."""
     made = Blueprint("pages", __name__, template_folder="../templates")
 
     @lru_cache(maxsize=1)
-    def document():
-        return openapi_document.build(current_app._get_current_object(), spec, editions)
-
-    @lru_cache(maxsize=1)
     def document_bytes():
-        return orjson.dumps(document())
+        return orjson.dumps(document()[0])
 
     @lru_cache(maxsize=1)
     def page_bytes():
-        return render_template("api.html", **page.view(document())).encode()
+        return render_template("api.html", **page.view(document()[0])).encode()
 
     @lru_cache(maxsize=len(TYPES))
     def problem_bytes(code):
@@ -41,6 +36,13 @@ def blueprint(spec, editions):
     def openapi():
         query()
         return _bytes(document_bytes(), JSON)
+
+    @made.get("/v1/examples/<string:name>.json")
+    def example(name):
+        query()
+        if name not in document()[1]:
+            raise ProblemError("not-found", f"The document has no example {name[:80]!r} of its own address.")
+        return _bytes(document()[1][name], JSON)
 
     @made.get("/")
     def api_page():
