@@ -13,7 +13,7 @@ control_socket_disable = True
 timeout = 30
 graceful_timeout = 10
 loglevel = "warning"        # the service logs its own requests, one JSON line each
-limit_request_line = 4094
+limit_request_line = 8190
 limit_request_fields = 64
 limit_request_field_size = 8190
 

@@ -117,7 +117,7 @@ def _text(field, branch, bundle):
 
 
 def _curve(field, branch, bundle):
-    pair = {"type": "array", "items": {"type": "number"}, "minItems": 2, "maxItems": 2}
+    pair = {"type": "array", "items": {"type": "number", "minimum": -EXACT_WHOLE, "maximum": EXACT_WHOLE}, "minItems": 2, "maxItems": 2}
     return {"type": "array", "items": pair, "minItems": 1, "maxItems": 64, "x-units": field["units"]}
 
 

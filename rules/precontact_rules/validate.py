@@ -3,8 +3,10 @@
 The validator is compiled once per check from the bundle's own declaration, the same that the OpenAPI schema, the handheld's form and the
 reference tables are made from.
 """
+from operator import itemgetter
+
 from .declaration import Check
-from .numbers import entry_number, number_reader
+from .numbers import EXACT_WHOLE, entry_number, number_reader
 from .problems import InputProblems, Problem, shown
 
 NO_TITLE = {"en": "the instrument described", "es": "el instrumento descrito"}
@@ -400,13 +402,11 @@ def _text_reader(longest):
 def _curve_reader(field):
     def read(x, run, pointer):
         fine = type(x) is list and 0 < len(x) <= 64 and all(
-            type(p) is list and len(p) == 2 and all(type(c) in (int, float) and abs(c) < 1e300 for c in p) for p in x)
-        if not fine:
-            run.problems.append(Problem(pointer, "wrong-type", f"{shown(x)} is not a curve; give 1 to 64 pairs of numbers [[x, y], ...]"))
-        elif any(a[0] >= b[0] for a, b in zip(x, x[1:])):
-            run.problems.append(Problem(pointer, "out-of-range", f"{shown(x)} does not rise; every x must be above the one before"))
-        else:
-            return _columns(x)
+            type(p) is list and len(p) == 2 and all(type(c) in (int, float) and abs(c) <= EXACT_WHOLE for c in p) for p in x)
+        if fine:
+            # The points of a curve have one order, whatever order they come in; two at one x are a step there.
+            return _columns(sorted(x, key=itemgetter(0)))
+        run.problems.append(Problem(pointer, "wrong-type", f"{shown(x)} is not a curve; give 1 to 64 pairs of numbers [[x, y], ...]"))
         return None
 
     return read

@@ -1,5 +1,5 @@
 """Documentation of the rule sets."""
-from .operations import ETAG_HEADER, IF_MATCH, IF_NONE_MATCH, documented, found, path_parameter, problems, unchanged
+from .operations import ETAG_HEADER, IF_NONE_MATCH, documented, found, path_parameter, problems, unchanged
 from .schemas import RuleSet, RuleSetList
 
 _ETAG = {"ETag": ETAG_HEADER}
@@ -19,8 +19,8 @@ def listing(made, view, editions):
 
 def one(made, view, editions):
     """GET /v1/rule-sets/<name>."""
-    return documented(made, view, operationId="getRuleSet", summary="One rule set", description="Never changes: keep it as long as you like.",
-                      parameters=[_name(editions), IF_NONE_MATCH, IF_MATCH],
+    return documented(made, view, operationId="getRuleSet", summary="One rule set", description="Never changes: keep it as long as you like. `If-Match` is honoured.",
+                      parameters=[_name(editions), IF_NONE_MATCH],
                       responses={**found("What it holds", RuleSet, headers=_ETAG), **unchanged(), **problems(404, 412, 422)})
 
 
@@ -28,7 +28,7 @@ def bundle(made, view, editions):
     """GET /v1/rule-sets/<name>/bundle."""
     return documented(made, view, operationId="getBundle", summary="The exact bytes of a rule set",
                       description="Canonical JSON (RFC 8785). Its SHA-256 is the rule set's digest, its `ETag` and its `Repr-Digest`. "
-                                  "The cases inside let any runtime prove itself.",
-                      parameters=[_name(editions), IF_NONE_MATCH, IF_MATCH],
+                                  "The cases inside let any runtime prove itself. `If-Match` is honoured.",
+                      parameters=[_name(editions), IF_NONE_MATCH],
                       responses={**found("The bundle", {"type": "object", "description": "Described in the rule language's own page"}, headers={**_ETAG, **_DIGEST}),
                                  **unchanged(), **problems(404, 412, 422)})
