@@ -21,6 +21,8 @@ class Reader:
     def result(self, output):
         """The public form of a result whose value the numbers decide."""
         value = self.results[output.place]
+        if isinstance(value, np.generic):      # a look-up at one point ran among sampled ones
+            value = value.item()
         if output.samples is None and not output.axes:
             return self._one(value, None, None, output)
         low, high = (None, None) if output.samples is None else self.intervals[output.samples]
