@@ -113,7 +113,7 @@ def _switch(field, branch, bundle):
 
 
 def _text(field, branch, bundle):
-    return {"type": "string", "maxLength": field["longest"], "pattern": "^[ -~\u00a1-\u024f]*$"}
+    return {"type": "string", "maxLength": field["longest"], "pattern": "^[ -~\u00a1-\u00ac\u00ae-\u024f]*$"}
 
 
 def _curve(field, branch, bundle):

@@ -21,8 +21,8 @@ class Reader:
     def result(self, output):
         """The public form of a result whose value the numbers decide."""
         value = self.results[output.place]
-        if isinstance(value, np.generic):      # a look-up at one point ran among sampled ones
-            value = value.item()
+        if type(value) is not float and not output.axes and isinstance(value, (np.generic, np.ndarray)):
+            value = value.item()               # a look-up at one point ran among sampled ones
         if output.samples is None and not output.axes:
             return self._one(value, None, None, output)
         low, high = (None, None) if output.samples is None else self.intervals[output.samples]
