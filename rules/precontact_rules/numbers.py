@@ -3,7 +3,7 @@ import math
 
 from .problems import Problem, shown
 
-EXACT_WHOLE = 2 ** 53      # beyond it not every whole number is a binary64
+EXACT_WHOLE = 2 ** 53      # beyond it not every whole number is a binary64; nothing on a test bench is larger
 SPREADS = ("half_width", "half_width_percent", "standard_uncertainty")
 _FORMS = "a number, {value, half_width}, {value, half_width_percent}, {value, standard_uncertainty} or {between: [low, high]}"
 
@@ -19,8 +19,8 @@ def entry_number(record):
 def number_reader(slot):
     """The reader for one number field: read(x, problems, pointer) -> float, ("r" | "n", value, spread), or None after a problem."""
     field, factor = slot.field, slot.factor
-    low = field["least"] if "least" in field else math.nextafter(field["above"], math.inf) if "above" in field else -math.inf
-    high = field["most"] if "most" in field else math.nextafter(field["below"], -math.inf) if "below" in field else math.inf
+    low = field["least"] if "least" in field else math.nextafter(field["above"], math.inf) if "above" in field else -EXACT_WHOLE
+    high = field["most"] if "most" in field else math.nextafter(field["below"], -math.inf) if "below" in field else EXACT_WHOLE
     uncertain = field.get("uncertain", False)
     unit = field["unit"].replace("_", " ")
 
@@ -52,7 +52,7 @@ def number_reader(slot):
             problems.append(Problem(pointer, "wrong-type" if x is not None else "missing", f"{shown(x)} is not a number; give {what}"))
         elif not least <= x <= most or abs(x) == math.inf or (type(x) is int and abs(x) > EXACT_WHOLE):
             problems.append(bad_number(x, pointer) if what == "the value" else
-                            Problem(pointer, "out-of-range", f"{shown(x)} is not possible here; {what} is a finite number, 0 or more"))
+                            Problem(pointer, "out-of-range", f"{shown(x)} is not possible here; {what} is between 0 and 2^53"))
         else:
             return x + 0.0
         return None
@@ -90,7 +90,7 @@ def number_reader(slot):
 
     def around(x, name, problems, pointer):
         value = plain(x.get("value"), problems, pointer + "/value", low, high, "the value")
-        size = plain(x[name], problems, f"{pointer}/{name}", 0, math.inf, f"the {name.replace('_', ' ')}")
+        size = plain(x[name], problems, f"{pointer}/{name}", 0, EXACT_WHOLE, f"the {name.replace('_', ' ')}")
         if value is None or size is None:
             return None
         value *= factor
@@ -106,7 +106,7 @@ def range_text(field):
     for key, words in (("above", "above"), ("least", "at least"), ("below", "below"), ("most", "at most")):
         if key in field:
             parts.append(f"{words} {field[key]:g}")
-    return " and ".join(parts) or "any finite number"
+    return " and ".join(parts) or "between -2^53 and 2^53"
 
 
 def _escaped(key):
