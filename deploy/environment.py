@@ -50,7 +50,7 @@ def _make(folder):
 
 def _install(python, lock):
     # --require-hashes: only the very files that the lock names. --only-binary: nothing is compiled here.
-    command = [str(python), "-m", "pip", "install", "--quiet", "--disable-pip-version-check", "--no-input",
+    command = [str(python), "-m", "pip", "install", "--quiet", "--quiet", "--disable-pip-version-check", "--no-input",
                "--require-hashes", "--only-binary", ":all:", "-r", str(lock)]
     if subprocess.run(command).returncode:
         raise Unable(f"Not everything that {lock.relative_to(ROOT)} names could be installed; pip's message is above.")

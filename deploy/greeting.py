@@ -31,17 +31,19 @@ def greet(server, host, port):
 
 def _ready(server, host, port):
     until = time.monotonic() + _PATIENCE
+    complaint = f"not ready after {_PATIENCE} s; the log above says why."
     while time.monotonic() < until:
         if os.getppid() != server:
             return False
         try:
-            status, _ = _ask(host, port, "GET", "/readyz")
+            status, said = _ask(host, port, "GET", "/readyz")
             if status == 200:
                 return True
+            complaint = f"it runs, but must not be used: {said['detail']}"
+            break
         except OSError:
-            pass
-        time.sleep(0.1)
-    print(f"deploy/run: not ready after {_PATIENCE} s; the log above says why. Stopping.", file=sys.stderr, flush=True)
+            time.sleep(0.1)
+    print(f"deploy/run: {complaint} Stopping.", file=sys.stderr, flush=True)
     os.kill(server, signal.SIGTERM)
     return False
 

@@ -6,7 +6,9 @@ from .trace import traceparent
 
 EDITION = "precontact.edition"        # a view that used another rule set than the latest leaves it here
 
-CONTENT_POLICY = ("default-src 'none'; style-src 'self'; img-src 'self'; base-uri 'none'; form-action 'none'; frame-ancestors 'none'")
+_PROBES = ("/healthz", "/readyz")      # asked every few seconds; only a bad answer is news
+
+CONTENT_POLICY = "default-src 'none'; style-src 'self'; base-uri 'none'; form-action 'none'; frame-ancestors 'none'"
 SECURITY = [
     ("Content-Security-Policy", CONTENT_POLICY),
     ("X-Content-Type-Options", "nosniff"),
@@ -28,7 +30,7 @@ class Door:
         def start(status, headers, exc_info=None):
             edition = environ.get(EDITION)
             headers.extend(self._latest_headers if edition is None else [edition.header, *SECURITY])
-            if self._logged:
+            if self._logged and not (status.startswith("200") and environ["PATH_INFO"] in _PROBES):
                 log.request(environ, status, started, (edition or self._latest).version, traceparent(environ))
             return start_response(status, headers, exc_info)
 
