@@ -3,11 +3,10 @@
 The validator is compiled once per check from the bundle's own declaration, the same that the OpenAPI schema, the handheld's form and the
 reference tables are made from.
 """
-from operator import itemgetter
-
 from .declaration import Check
-from .numbers import EXACT_WHOLE, entry_number, number_reader
+from .numbers import entry_number
 from .problems import InputProblems, Problem, shown
+from .readers import columns, reader
 
 NO_TITLE = {"en": "the instrument described", "es": "el instrumento descrito"}
 _LISTED = 12      # so many allowed keys are written out in a message
@@ -95,7 +94,7 @@ class _Leaf:
 
     def __init__(self, field, slot):
         self.key, self.field, self.slot = field["key"], field, slot
-        self._read = _reader(field, slot)
+        self._read = reader(field, slot)
         self._absent = None if field["kind"] in ("choice", "switch") else "a"
         assume = field.get("assume")
         self._assumed = None if assume is None else assume["value"] * slot.factor if field["kind"] == "number" else assume["value"]
@@ -154,6 +153,7 @@ class _Catalogue:
 
     def __init__(self, field, bundle):
         self.kind = field["of"]
+        self.folder = bundle["kinds"][self.kind]["folder"]
         self.fields = bundle["kinds"][self.kind]["fields"]
         self.keys = frozenset(f["key"] for f in self.fields) | {"id"}
         self.titles = {id_: entry["title"] for id_, entry in bundle["entries"].get(self.kind, {}).items()}
@@ -181,7 +181,7 @@ class _Catalogue:
 
     def _unknown_id(self, x, pointer):
         ids = sorted(self.values)
-        listed = f"known: {', '.join(ids)}" if len(ids) <= _LISTED else f"{len(ids)} are listed under /v1/catalogues/{self.kind}"
+        listed = f"known: {', '.join(ids)}" if len(ids) <= _LISTED else f"{len(ids)} are listed under /v1/catalogues/{self.folder}"
         return Problem(pointer, "unknown-id", f"{shown(x)} is not in the {self.kind} catalogue; {listed}")
 
 
@@ -190,12 +190,8 @@ def _entry_value(field, stored):
     if field["kind"] == "number":
         return entry_number(stored), stored
     if field["kind"] == "curve":
-        return _columns(stored["points"]), stored
+        return columns(stored["points"]), stored
     return stored, None
-
-
-def _columns(points):
-    return [float(x) for x, _ in points], [float(y) for _, y in points]
 
 
 class _Reference:
@@ -267,7 +263,7 @@ class _Column:
 
     def __init__(self, field, slot):
         self.key, self.field, self.slot = field["key"], field, slot
-        self._read = _reader(field, slot)
+        self._read = reader(field, slot)
         self._codes = {c["key"]: i for i, c in enumerate(field["choices"])} if field["kind"] == "choice" else None
         assume = field.get("assume")
         self._assumed = None if assume is None else assume["value"] * slot.factor if field["kind"] == "number" else assume["value"]
@@ -341,72 +337,3 @@ class _ReferenceColumns:
                 column._append([None] * len(pairs), run)
             else:
                 column.take_values(pairs, run, pointer, "/" + self.key)
-
-
-# ---- readers of single values ------------------------------------------------------------------------------------------------------------
-
-def _reader(field, slot):
-    """read(x, run, pointer) -> the value as the intake holds it, or None after a problem."""
-    kind = field["kind"]
-    if kind == "number":
-        number = number_reader(slot)
-        return lambda x, run, pointer: number(x, run.problems, pointer)
-    if kind == "choice":
-        return _choice_reader(field)
-    if kind == "switch":
-        return _switch_reader
-    if kind == "text":
-        return _text_reader(field["longest"])
-    return _curve_reader(field)
-
-
-def _choice_reader(field):
-    only = {choice["key"]: choice.get("only") for choice in field["choices"]}
-    listed = ", ".join(only)
-
-    def read(x, run, pointer):
-        if type(x) is not str or x not in only:
-            code = "unknown-choice" if type(x) is str else "wrong-type"
-            run.problems.append(Problem(pointer, code, f"{shown(x)} is not one of the choices; they are {listed}"))
-        elif only[x] is not None and run.branch is not None and run.branch not in only[x]:
-            run.problems.append(Problem(pointer, "not-applicable", f"{x} does not go with {run.branch}; it belongs to {', '.join(only[x])}"))
-        else:
-            return x
-        return None
-
-    return read
-
-
-def _switch_reader(x, run, pointer):
-    if type(x) is bool:
-        return x
-    run.problems.append(Problem(pointer, "wrong-type", f"{shown(x)} is neither true nor false"))
-    return None
-
-
-def _text_reader(longest):
-    def read(x, run, pointer):
-        if type(x) is not str:
-            run.problems.append(Problem(pointer, "wrong-type", f"{shown(x)} is not text"))
-        elif len(x) > longest:
-            run.problems.append(Problem(pointer, "too-long", f"{len(x)} characters; at most {longest}"))
-        elif not x.isprintable():
-            run.problems.append(Problem(pointer, "bad-characters", "holds a character that cannot be printed; plain text on one line is right"))
-        else:
-            return x or None
-        return None
-
-    return read
-
-
-def _curve_reader(field):
-    def read(x, run, pointer):
-        fine = type(x) is list and 0 < len(x) <= 64 and all(
-            type(p) is list and len(p) == 2 and all(type(c) in (int, float) and abs(c) <= EXACT_WHOLE for c in p) for p in x)
-        if fine:
-            # The points of a curve have one order, whatever order they come in; two at one x are a step there.
-            return _columns(sorted(x, key=itemgetter(0)))
-        run.problems.append(Problem(pointer, "wrong-type", f"{shown(x)} is not a curve; give 1 to 64 pairs of numbers [[x, y], ...]"))
-        return None
-
-    return read

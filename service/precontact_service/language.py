@@ -16,4 +16,6 @@ def chosen(environ):
 
 @lru_cache(maxsize=512)
 def _best(accepted):
-    return parse_accept_header(accepted, LanguageAccept).best_match(LANGUAGES, default=LANGUAGES[0])
+    # A region is no reason to change the language: es-MX is Spanish, and comes before an English that is wanted less.
+    wanted = [(tag.partition("-")[0], quality) for tag, quality in parse_accept_header(accepted)]
+    return LanguageAccept(wanted).best_match(LANGUAGES, default=LANGUAGES[0])

@@ -24,7 +24,7 @@ def content_response(content, media_type, etag, caching, language=None, extra=()
     if language:
         headers += [("Content-Language", language), ("Vary", "Accept-Language")]
     bare = etag.strip('"')
-    if request.if_match and not request.if_match.is_strong(bare):
+    if request.if_match and not request.if_match.contains(bare):
         raise ProblemError("precondition-failed", f"If-Match does not name {etag}, which is what this address holds.", headers=[("ETag", etag)])
     if request.if_none_match and request.if_none_match.contains_weak(bare):
         return Response(status=304, headers=headers)
