@@ -80,7 +80,7 @@ def worked_check(host, port):
 
 
 def _paragraph(text, indent):
-    return textwrap.fill(text, _WIDTH, initial_indent=indent, subsequent_indent=indent + "  ")
+    return textwrap.fill(text, _WIDTH, initial_indent=indent, subsequent_indent=indent + "  ", break_on_hyphens=False)
 
 
 def _numbers(answer, described):

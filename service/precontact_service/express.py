@@ -19,8 +19,11 @@ class Express:
     def __call__(self, environ, start_response):
         question = self._questions.get(environ["PATH_INFO"])
         if question is not None and environ["REQUEST_METHOD"] == "POST" and _plain(environ):
-            raw = environ["wsgi.input"].read(int(environ["CONTENT_LENGTH"]))
+            length = int(environ["CONTENT_LENGTH"])
+            raw = environ["wsgi.input"].read(length)
             try:
+                if len(raw) != length:
+                    raise EOFError
                 content, language = question.answer(environ, raw)
             except Exception:  # noqa: BLE001  (the long way answers it, and logs it where it is our fault)
                 environ["wsgi.input"] = BytesIO(raw)

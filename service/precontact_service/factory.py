@@ -10,7 +10,6 @@ from . import problems
 from .door import Door
 from .editions import Editions
 from .express import Express
-from .intake import LIMIT
 from .openapi import document as openapi_document
 from .openapi.api import DocumentedApi
 from .questions import questions
@@ -32,7 +31,6 @@ class _Application(Flask):
 def create_app(folder=released.FOLDER, access_log=True):
     """The WSGI application that serves the rule sets released in `folder`."""
     app = _Application(__name__, static_folder=None)
-    app.config["MAX_CONTENT_LENGTH"] = LIMIT
     app.url_map.merge_slashes = False
     app.url_map.redirect_defaults = False
     editions = Editions(folder)

@@ -8,11 +8,23 @@ LIMIT = 262_144     # bytes of a body; the largest sensible question (16 reading
 
 
 def read_body():
-    """Its bytes. Raises ProblemError; Flask itself refuses a body over LIMIT."""
+    """Its bytes. Raises ProblemError."""
     _check_media_type()
     _check_encoding()
     _check_query()
-    return request.get_data(cache=False)
+    if (request.content_length or 0) > LIMIT:
+        refuse_length()
+    # A body without a stated length is cut at max_content_length without a word, so that is one more than may be.
+    request.max_content_length = LIMIT + 1
+    raw = request.get_data(cache=False)
+    if len(raw) > LIMIT:
+        refuse_length()
+    return raw
+
+
+def refuse_length():
+    """Raise the ProblemError of a body that is too large."""
+    raise ProblemError("body-too-large", f"The body is longer than {LIMIT} bytes.")
 
 
 def _check_media_type():

@@ -61,8 +61,6 @@ def on_http(error):
     """Handler of what Flask and werkzeug raise themselves: 404, 405, 413 and the like."""
     if error.code is None or error.code < 400:
         return error
-    if error.code == 413:
-        return respond("body-too-large", f"The body is longer than {request.max_content_length} bytes.")
     if error.code == 405:
         allowed = ", ".join(sorted(error.valid_methods or ()))
         return respond("method-not-allowed", f"{request.method} is not answered here; {allowed} is.", headers=[("Allow", allowed)])

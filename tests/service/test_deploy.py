@@ -1,0 +1,83 @@
+"""deploy/run as a person meets it."""
+import json
+import os
+import shlex
+import signal
+import socket
+import subprocess
+import time
+
+import pytest
+from serving import ROOT, free_port, wait_until_ready
+
+RUN = ROOT / "deploy" / "run"
+
+
+def environment(port):
+    """What a fresh shell has: no Python path of ours."""
+    kept = {key: value for key, value in os.environ.items() if key not in ("PYTHONPATH", "VIRTUAL_ENV")}
+    return {**kept, "PORT": str(port)}
+
+
+@pytest.fixture(scope="module")
+def session(tmp_path_factory):
+    """(everything printed up to the repeated command, port, exit status after Ctrl-C) of one run from another folder."""
+    port, elsewhere = free_port(), tmp_path_factory.mktemp("elsewhere")
+    process = subprocess.Popen([str(RUN)], cwd=elsewhere, env=environment(port), stdout=subprocess.PIPE, stderr=subprocess.DEVNULL, text=True, start_new_session=True)
+    said = []
+    for line in process.stdout:
+        said.append(line)
+        if line.startswith("    -d "):
+            break
+    text = "".join(said)
+    command = text[text.index("  curl"):]
+    body, path = shlex.split(command.replace("\\\n", " "))[-1], command.split(f":{port}")[1].split(" ")[0]
+    import urllib.request
+    request = urllib.request.Request(f"http://127.0.0.1:{port}{path}", body.encode(), {"Content-Type": "application/json"})
+    answer = json.loads(urllib.request.urlopen(request, timeout=10).read())
+    os.killpg(process.pid, signal.SIGINT)                # what Ctrl-C does: the whole group hears it
+    status = process.wait(20)
+    return text, answer, port, status
+
+
+def test_the_worked_check_is_in_words_and_numbers(session):
+    text, answer, port, _ = session
+    assert f"http://127.0.0.1:{port}" in text
+    assert f"Verdict: {answer['verdict'].upper()}" in text
+    flat = " ".join(text.split())
+    assert all(" ".join(finding["sentence"].split()) in flat for finding in answer["findings"])
+    assert all(" ".join(caution["text"].split()) in flat for caution in answer["cautions"])
+    assert "probability between" in text and "{" not in text[:text.index("Repeat it:")]
+
+
+def test_ctrl_c_ends_it_and_frees_the_port(session):
+    _, _, port, status = session
+    assert status == 0
+    with socket.socket() as probe:
+        probe.setsockopt(socket.SOL_SOCKET, socket.SO_REUSEADDR, 1)
+        probe.bind(("127.0.0.1", port))
+
+
+def test_a_taken_port_is_said_clearly():
+    with socket.socket() as holder:
+        holder.bind(("127.0.0.1", 0))
+        holder.listen()
+        port = holder.getsockname()[1]
+        done = subprocess.run([str(RUN)], env=environment(port), capture_output=True, text=True, timeout=60)
+    assert done.returncode == 1 and not done.stdout
+    assert done.stderr.count("\n") == 1 and f"Port {port} is taken" in done.stderr and f"PORT={port + 1}" in done.stderr
+
+
+@pytest.mark.parametrize("port", ["http", "0", "65536", "-1", ""])
+def test_a_port_that_is_none(port):
+    done = subprocess.run([str(RUN)], env=environment(port), capture_output=True, text=True, timeout=60)
+    assert done.returncode == 1 and "from 1 to 65535" in done.stderr and "Traceback" not in done.stderr
+
+
+def test_term_ends_it_too_and_the_second_run_is_quick():
+    port, started = free_port(), time.monotonic()
+    process = subprocess.Popen([str(RUN)], env=environment(port), stdout=subprocess.DEVNULL, stderr=subprocess.DEVNULL, start_new_session=True)
+    wait_until_ready(port, process)
+    assert time.monotonic() - started < 15
+    process.terminate()
+    assert process.wait(20) == 0

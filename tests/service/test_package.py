@@ -1,0 +1,19 @@
+"""What is installed from this repository has everything that it needs."""
+import subprocess
+import sys
+import zipfile
+
+from precontact_rules import released
+from serving import ROOT
+
+
+def test_the_wheel_holds_releases_pages_and_both_packages(tmp_path):
+    subprocess.run([sys.executable, "-m", "pip", "wheel", "--quiet", "--no-deps", "--no-build-isolation", "--wheel-dir", tmp_path, "."], cwd=ROOT, check=True, capture_output=True)
+    names = set(zipfile.ZipFile(next(tmp_path.glob("*.whl"))).namelist())
+    assert {f"precontact_rules/released/{row['version']}.json" for row in released.listing()} | {"precontact_rules/released/index.json"} <= names
+    for package in ("rules/precontact_rules", "service/precontact_service"):
+        folder = ROOT / package
+        sources = {str(path.relative_to(folder.parent)) for path in folder.rglob("*") if path.suffix in (".py", ".html", ".css")}
+        assert sources <= names, sources - names
+    script = next(name for name in names if name.endswith("entry_points.txt"))
+    assert "precontact-rules" in zipfile.ZipFile(next(tmp_path.glob("*.whl"))).read(script).decode()
