@@ -13,17 +13,18 @@ def read_body():
     _check_encoding()
     _check_query()
     if (request.content_length or 0) > LIMIT:
-        refuse_length()
+        _refuse_length()
     # A body without a stated length is cut at max_content_length without a word, so that is one more than may be.
     request.max_content_length = LIMIT + 1
     raw = request.get_data(cache=False)
     if len(raw) > LIMIT:
-        refuse_length()
+        _refuse_length()
+    if request.content_length not in (None, len(raw)):
+        raise ProblemError("bad-request", f"The body ended after {len(raw)} of {request.content_length} bytes.")
     return raw
 
 
-def refuse_length():
-    """Raise the ProblemError of a body that is too large."""
+def _refuse_length():
     raise ProblemError("body-too-large", f"The body is longer than {LIMIT} bytes.")
 
 
