@@ -262,6 +262,9 @@ class Inference:
         return inner
 
     def _given(self, a):
+        if a[0] == "name" and a[1] in self.scope.texts:
+            self.scope.used.add(a[1])
+            return Type("boolean")
         if a[0] == "name" and a[1] in self.scope.groups:
             raise Mismatch(f"given of the group {a[1]!r}", "given of one of its fields")
         return Type("boolean", PURE, self.of(a).axes - {"samples"})

@@ -10,6 +10,7 @@ PURE = _registry.Unit("dimensionless").dimensionality
 # name: (symbol, factor to SI, engineering prefixes in sentences, the same unit for pint)
 _UNITS = {
     "ratio": ("", "1", False, "dimensionless"), "percent": ("%", "0.01", False, "dimensionless"), "count": ("", "1", False, "dimensionless"),
+    "process_unit": ("", "1", False, "dimensionless"),      # whatever the process is measured in; a pure number here
     "nat": ("nat", "1", False, "dimensionless"), "bit": ("bit", "0.6931471805599453", False, "dimensionless"),
     "radian": ("rad", "1", False, "dimensionless"), "degree": ("°", "0.017453292519943295", False, "dimensionless"),
     "volt": ("V", "1", True, "volt"), "ampere": ("A", "1", True, "ampere"), "ohm": ("Ω", "1", True, "ohm"), "siemens": ("S", "1", True, "siemens"),
@@ -24,6 +25,7 @@ _UNITS = {
     "volt_squared": ("V²", "1", False, "volt ** 2"), "ampere_squared": ("A²", "1", False, "ampere ** 2"), "ohm_squared": ("Ω²", "1", False, "ohm ** 2"),
     "siemens_squared": ("S²", "1", False, "siemens ** 2"), "second_squared": ("s²", "1", False, "second ** 2"),
     "volt_per_ampere": ("V/A", "1", True, "ohm"), "ampere_per_volt": ("A/V", "1", True, "siemens"), "per_volt": ("1/V", "1", False, "1 / volt"),
+    "per_volt_squared": ("1/V²", "1", False, "1 / volt ** 2"),
     "per_ohm": ("1/Ω", "1", True, "siemens"), "per_ampere": ("1/A", "1", False, "1 / ampere"), "ohm_metre": ("Ω·m", "1", True, "ohm * metre"),
     "volt_second": ("V·s", "1", True, "volt * second"), "ampere_second": ("A·s", "1", True, "coulomb"), "ohm_per_kelvin": ("Ω/K", "1", True, "ohm / kelvin"),
     "per_farad": ("1/F", "1", False, "1 / farad"), "per_metre": ("1/m", "1", False, "1 / metre"),
