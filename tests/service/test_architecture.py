@@ -8,7 +8,7 @@ import pytest
 ROOT = Path(__file__).resolve().parents[2]
 RULES, SERVICE = ROOT / "rules" / "precontact_rules", ROOT / "service" / "precontact_service"
 MODULES = sorted(path for folder in ("rules", "service", "tests", "deploy") for path in (ROOT / folder).rglob("*.py") if "node_modules" not in path.parts)
-SERVICE_MAY = {"precontact_rules", "flask", "flask_smorest", "marshmallow", "apispec", "werkzeug", "orjson", "gunicorn"}
+SERVICE_MAY = {"precontact_rules", "flask", "flask_smorest", "marshmallow", "apispec", "werkzeug", "markupsafe", "orjson", "gunicorn"}
 AUTHORING_MAY = {"numpy", "yaml", "pint", "rfc8785", "precontact_rules"}
 
 

@@ -5,7 +5,7 @@ import shlex
 
 def view(document):
     """Template values."""
-    operations = [_operation(document, path, method, item[method]) for path, item in document["paths"].items() for method in ("get", "post") if method in item]
+    operations = [_operation(document, path, method, item[method]) for path, item in document["paths"].items() for method in ("post", "get") if method in item]
     tags = [{"name": tag["name"], "anchor": tag["name"].replace(" ", "-"), "description": tag["description"],
              "operations": [o for o in operations if tag["name"] in o["tags"]]} for tag in document["tags"]]
     return {"info": document["info"], "tags": tags}

@@ -1,10 +1,12 @@
 """Pages for people: every operation with its examples, and what each kind of problem means. No script, nothing from elsewhere."""
 import hashlib
+import re
 from functools import lru_cache
 from pathlib import Path
 
 import orjson
 from flask import Blueprint, render_template
+from markupsafe import Markup, escape
 
 from ..openapi import page
 from ..parameters import query
@@ -19,6 +21,8 @@ _STYLE = Path(__file__).parent.parent / "static" / "style.css"
 def blueprint(document):
     """Routes of the pages and of the OpenAPI document; `document()` gives it with the answers kept beside it."""
     made = Blueprint("pages", __name__, template_folder="../templates")
+
+    made.add_app_template_filter(_with_code, "code")
 
     @lru_cache(maxsize=1)
     def document_bytes():
@@ -66,3 +70,8 @@ def blueprint(document):
 
 def _bytes(content, media_type):
     return content_response(content, media_type, f'"sha-256:{hashlib.sha256(content).hexdigest()}"', REVALIDATE)
+
+
+def _with_code(text):
+    """Words in backticks as code."""
+    return Markup(re.sub(r"`([^`]+)`", r"<code>\1</code>", str(escape(text))))
