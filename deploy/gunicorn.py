@@ -12,7 +12,16 @@ worker_tmp_dir = "/dev/shm" if os.path.isdir("/dev/shm") else None    # the hear
 control_socket_disable = True
 timeout = 30
 graceful_timeout = 10
-loglevel = "warning"        # the service logs its own requests, one JSON line each
+loglevel = "warning"        # the service logs its own requests
+logconfig_dict = {          # and every line is one JSON object
+    "version": 1,
+    "disable_existing_loggers": False,
+    "formatters": {"lines": {"class": "precontact_service.log.Lines"}},
+    "handlers": {"errors": {"class": "logging.StreamHandler", "formatter": "lines", "stream": "ext://sys.stderr"}},
+    "root": {"level": "WARNING", "handlers": ["errors"]},
+    "loggers": {"gunicorn.error": {"level": "WARNING", "handlers": ["errors"], "propagate": False},
+                "gunicorn.access": {"level": "CRITICAL", "handlers": [], "propagate": False}},
+}
 limit_request_line = 8190
 limit_request_fields = 64
 limit_request_field_size = 8190

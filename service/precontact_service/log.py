@@ -1,4 +1,5 @@
 """One JSON object per line on standard error: a line per request, and a line with the traceback per failure."""
+import logging
 import os
 import time
 import traceback
@@ -38,3 +39,14 @@ def failure(error, method, path, trace):
 def event(name, **details):
     """Log something that is not a request."""
     _write({"time": time.time(), "event": name, **details})
+
+
+class Lines(logging.Formatter):
+    """What gunicorn itself has to say, in the same form."""
+
+    def format(self, record):
+        """One JSON object, no line end."""
+        entry = {"time": record.created, "event": "gunicorn", "level": record.levelname.lower(), "message": record.getMessage()}
+        if record.exc_info:
+            entry["traceback"] = traceback.format_exception(*record.exc_info)
+        return orjson.dumps(entry).decode()
