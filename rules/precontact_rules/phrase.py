@@ -77,7 +77,8 @@ def fill(template, reader, language):
             filled.append(reader.words(content))
         else:
             filled.append(joined(reader.listed(*content), language))
-    return "".join(filled)
+    sentence = "".join(filled)
+    return sentence[:1].upper() + sentence[1:]     # it may begin with a name
 
 
 def joined(names, language):

@@ -154,6 +154,7 @@ class _Catalogue:
     def __init__(self, field, bundle):
         self.kind = field["of"]
         self.folder = bundle["kinds"][self.kind]["folder"]
+        self.described = bundle["kinds"][self.kind].get("described", NO_TITLE)
         self.fields = bundle["kinds"][self.kind]["fields"]
         self.keys = frozenset(f["key"] for f in self.fields) | {"id"}
         self.titles = {id_: entry["title"] for id_, entry in bundle["entries"].get(self.kind, {}).items()}
@@ -173,11 +174,11 @@ class _Catalogue:
                 _unknown(x, self.keys, run.problems, pointer)
             named = x.get("id")
             if named is None:
-                return x, {}, NO_TITLE
+                return x, {}, self.described
             if type(named) is str and named in self.values:
                 return x, self.values[named], self.titles[named]
             run.problems.append(self._unknown_id(named, pointer + "/id"))
-        return None, {}, NO_TITLE
+        return None, {}, self.described
 
     def _unknown_id(self, x, pointer):
         ids = sorted(self.values)

@@ -45,9 +45,11 @@ def build(folder):
 
 
 def _kind(source, mapping):
-    source.keys(mapping, ("folder", "title", "fields", "formulas"), ("folder", "title", "fields"))
-    return {"folder": mapping.get("folder"), "title": source.text(mapping, "title"),
-            "fields": fields.declared(source, mapping.get("fields", {}), [])}
+    source.keys(mapping, ("folder", "title", "described", "fields", "formulas"), ("folder", "title", "fields"))
+    made = {"folder": mapping.get("folder"), "title": source.text(mapping, "title"), "fields": fields.declared(source, mapping.get("fields", {}), [])}
+    if "described" in mapping:
+        made["described"] = source.text(mapping, "described")
+    return made
 
 
 def _work(source, key):
