@@ -114,5 +114,6 @@ def test_it_ends_cleanly_and_logs_one_json_line_per_request(tmp_path, how):
         process.send_signal(how)
         assert process.wait(15) == 0
     lines = [json.loads(line) for line in (tmp_path / "errors").read_text().splitlines()]
+    lines = [line for line in lines if line["event"] == "request"]
     assert [(line["method"], line["path"], line["status"]) for line in lines] == [("POST", "/v1/checks/loading-error", 200), ("GET", "/nowhere", 404)]
     assert lines[0]["traceparent"] == trace.decode() and lines[0]["milliseconds"] > 0 and lines[0]["rule_set"]
