@@ -68,6 +68,7 @@ class Emitter:
         """
         needed = self._needed(wanted)
         self.arrays = any(node.axes for node, _ in needed)
+        self.uniforms = sorted({node.extra[0] for node, lane in needed if node.op == "uniform" and lane == "s"})
         for node, lane in needed:
             self._emit(node, lane)
         results = [self._name(node, lane) for node, lane in wanted]
@@ -205,7 +206,7 @@ class Emitter:
     def _op_uniform(self, name, node, lane):
         axes = self._axes(node, lane)
         low, high = self._operands(node, lane, axes)
-        place = f"u[{node.extra[0]}]" if lane == "s" else "0.5"
+        place = f"u[{self.uniforms.index(node.extra[0])}]" if lane == "s" else "0.5"
         self.lines.append(_Line(name, self._arg_names(node, lane), f"{low} + ({high} - {low}) * {place}"))
 
     def _op_share(self, name, node, lane):

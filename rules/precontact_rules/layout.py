@@ -22,11 +22,10 @@ class Layout:
         """(whether the result belongs to this branch, its finished form or None)."""
         if output.absent is None:
             return True, None if output.place is not None else {"value": output.fixed}
-        if any(path not in applicable for path in output.absent.needs):
+        if any(path not in applicable for path in output.absent.needs or self.model.inputs_of(output.formula["name"])):
             return False, None
-        if output.absent.needs:
-            keys = [self.model.slots[self.model.slot_index[path]].pointer.replace("/*", "") for path in output.absent.needs]
-            return True, {"value": None, "reason": self.texts["needs-input"][self.language].replace("{names}", ", ".join(keys))}
         because = output.formula.get("absent_because")
-        return because is not None, because and {"value": None, "reason": because[self.language]}
-
+        if because is not None:
+            return True, {"value": None, "reason": because[self.language]}
+        keys = [self.model.slots[self.model.slot_index[path]].pointer.replace("/*", "") for path in output.absent.needs]
+        return bool(keys), {"value": None, "reason": self.texts["needs-input"][self.language].replace("{names}", ", ".join(keys))}

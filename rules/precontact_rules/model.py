@@ -21,7 +21,7 @@ class CheckModel:
         self.slot_index = {slot.path: index for index, slot in enumerate(self.slots)}
         self.formula_named = {f["name"]: f for f in self.formulas}
         self._axis_named = {a["name"]: a for a in self.axes}
-        self._lookups, self._applicable = {}, {}
+        self._lookups, self._applicable, self._inputs = {}, {}, {}
 
     def constant(self, name):
         """The constant's record: value in SI, unit, source, standing."""
@@ -101,8 +101,18 @@ class CheckModel:
         """Paths of the inputs that apply in the branch this signature took."""
         branch = states[self.slot_index[self.declared["branch"]]]
         if branch not in self._applicable:
-            self._applicable[branch] = {s.path for s in self.slots if branch in s.field.get("only", (branch,))}
+            self._applicable[branch] = {s.path for s in self.slots if s.only is None or branch in s.only}
         return self._applicable[branch]
+
+    def inputs_of(self, name):
+        """Paths of all inputs that a formula mentions, itself or through other formulas, whichever side of a conditional they stand on."""
+        if name not in self._inputs:
+            self._inputs[name] = frozenset()        # formulas come without cycles; this only guards the walk
+            found = set()
+            for mentioned in _references(self.formula_named[name]["tree"]):
+                found |= self.inputs_of(mentioned) if mentioned in self.formula_named else {mentioned} & self.slot_index.keys()
+            self._inputs[name] = frozenset(found)
+        return self._inputs[name]
 
     # ---- look-ups --------------------------------------------------------------------------------------------------------------------
 
@@ -124,3 +134,15 @@ class CheckModel:
     def is_weak(self, origin):
         """Whether a number of this origin may not make this check's verdict milder."""
         return origin.get("standing") in UNVERIFIED and self.name not in origin.get("cautious_in", {})
+
+
+def _references(tree):
+    if isinstance(tree, list) and tree:
+        if tree[0] == "ref":
+            yield tree[1]
+        elif tree[0] == "lookup" and tree[1] == "curve":
+            yield tree[2]
+            yield from _references(tree[3])
+        else:
+            for part in tree[1:]:
+                yield from _references(part)

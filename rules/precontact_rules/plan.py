@@ -57,7 +57,7 @@ class Plan:
         self.outputs = {f["name"]: self._output(f) for f in model.formulas}
         emitter = Emitter(graph)
         self._fast, self._safe, self._counts = emitter.compile(self._wanted)
-        self.uniform_count = len(graph.uniforms)
+        self.uniform_count = len(emitter.uniforms)     # those that something reported rests on
         self._leaves = {}
         self.exact = not emitter.arrays     # floats only: nothing to sample, no numpy call
 
