@@ -2,9 +2,11 @@
 import json
 import os
 import shlex
+import shutil
 import signal
 import socket
 import subprocess
+import sys
 import time
 
 import pytest
@@ -81,3 +83,37 @@ def test_term_ends_it_too_and_the_second_run_is_quick():
     assert time.monotonic() - started < 15
     process.terminate()
     assert process.wait(20) == 0
+
+
+FAKE_ENVIRONMENT = """
+import sys
+from pathlib import Path
+class Unable(Exception):
+    pass
+def environment(name, lock):
+    return Path(sys.executable)
+def installed_by_apt(packages):
+    return False
+def python_path():
+    return ""
+"""
+
+
+def test_a_group_that_cannot_run_fails_the_command_unless_it_is_left_out(tmp_path):
+    # The runner itself, on two made-up groups: one that runs, and one that needs a command that no machine has.
+    for folder in ("deploy", "tests/fine", "tests/wanting"):
+        (tmp_path / folder).mkdir(parents=True)
+    (tmp_path / "deploy" / "environment.py").write_text(FAKE_ENVIRONMENT)
+    shutil.copy(ROOT / "tests" / "run", tmp_path / "tests")
+    (tmp_path / "tests" / "wanting" / "needs.json").write_text('{"commands": {"no-such-command": "no-such-package"}}')
+    for group in ("fine", "wanting"):
+        (tmp_path / "tests" / group / f"test_{group}.py").write_text("def test_it():\n    pass\n")
+
+    def run(*arguments):
+        return subprocess.run([sys.executable, str(tmp_path / "tests" / "run"), *arguments], capture_output=True, text=True, timeout=120)
+
+    whole, less, unknown = run(), run("--leave-out", "wanting"), run("nonsense")
+    assert whole.returncode == 1 and "NOT RUN: wanting: no-such-command" in whole.stderr and "1 passed" in whole.stdout
+    assert less.returncode == 0 and "NOT RUN" not in less.stderr and "Left out as asked: wanting" in less.stdout
+    assert less.stdout.strip().splitlines()[-1].strip("= ").startswith("1 passed")
+    assert unknown.returncode == 2 and "fine, wanting" in unknown.stderr
