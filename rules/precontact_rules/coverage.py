@@ -28,6 +28,11 @@ _LOW_AT = _PLACES[0][0]
 _NODES = np.arange(64) + 0.5
 _NORMAL_REACH = 6.0
 
+# A probability is corrected by the mean error of the linear stand-in at several places about its threshold, as wide as the samples bend away from
+# it: at one place the stand-in's boundary can run along a plane of the lattice where the bent one does not.
+_BEND = 1.7
+_ABOUT = np.array([-1.0, -0.5, 0.0, 0.5, 1.0])
+
 NO_ENDS = (NAN, NAN)
 
 
@@ -134,10 +139,18 @@ def share(holds, difference, positive, drawn):
     line = _Line(*drawn.slopes(difference), drawn)
     if not line.usable:
         return plain
+    values = line.values(drawn)
+    bend = difference - values
+    bend -= line.origin
+    width = _BEND * math.sqrt(float(fold_sum(bend * bend, 0)) / POINTS)
+    if not width < math.inf:
+        return plain
+    places = np.minimum(np.maximum(width * _ABOUT - line.origin, -line.reach), line.reach)     # all of the stand-in lies within its reach
     step = math.pi / line.reach
     weights = _characteristic([line], np.array([step]))[0]
-    below = 0.5 + float(fold_sum(sin_array((-line.origin * step) * _NODES) * weights, 0)) / math.pi
-    correction = below - int(np.count_nonzero(line.values(drawn) <= -line.origin)) / POINTS
+    below = 0.5 + fold_sum(sin_array((places * step)[:, None] * _NODES) * weights, 1) / math.pi
+    counted = [int(np.count_nonzero(values <= place)) for place in places.tolist()]
+    correction = float(fold_sum(below, 0)) / len(counted) - sum(counted) / (POINTS * len(counted))
     return min(max(plain - correction if positive else plain + correction, 0.0), 1.0)
 
 

@@ -117,11 +117,13 @@ def relay_case(rng, number):
     return body, float(np.mean(share >= rng.uniform(0.3, 0.8, DRAWS))), float(np.mean(share >= rng.uniform(0.1, 0.6, DRAWS)))
 
 
-def sampled_rms(voltage, frequency, resistance, waveform, leakage, angle_degree, steps=200_000):
-    """Rms of the summed wave over one period: the instrument's current, whole or rectified, and a sinusoidal leakage."""
+def sampled_rms(voltage, resistance, waveform, leakage, angle_degree, steps=200_000):
+    """Rms of the summed wave over one period: the instrument's current, whole, rectified or direct, and a sinusoidal leakage."""
     phase = (np.arange(steps) + 0.5) * 2 * np.pi / steps
     through = math.sqrt(2) * voltage / resistance * np.sin(phase)
     if waveform == "half-wave":
         through = np.maximum(through, 0)
+    if waveform == "smooth-dc":
+        through = voltage / resistance
     wave = through + math.sqrt(2) * leakage * np.sin(phase + math.radians(angle_degree))
     return float(np.sqrt(np.mean(wave ** 2)))
