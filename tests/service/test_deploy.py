@@ -1,6 +1,7 @@
 """deploy/run as a person meets it."""
 import json
 import os
+import re
 import shlex
 import shutil
 import signal
@@ -8,6 +9,7 @@ import socket
 import subprocess
 import sys
 import time
+import tomllib
 
 import pytest
 from serving import ROOT, free_port, wait_until_ready
@@ -117,3 +119,54 @@ def test_a_group_that_cannot_run_fails_the_command_unless_it_is_left_out(tmp_pat
     assert less.returncode == 0 and "NOT RUN" not in less.stderr and "Left out as asked: wanting" in less.stdout
     assert less.stdout.strip().splitlines()[-1].strip("= ").startswith("1 passed")
     assert unknown.returncode == 2 and "fine, wanting" in unknown.stderr
+
+
+@pytest.fixture
+def environment_module(monkeypatch):
+    """deploy/environment.py, which may install nothing."""
+    monkeypatch.syspath_prepend(str(ROOT / "deploy"))
+    import environment as module
+    monkeypatch.setattr(module, "installed_by_apt", lambda packages: False)
+    return module
+
+
+def test_a_python_that_cannot_make_environments_is_said_clearly(environment_module, monkeypatch, tmp_path):
+    broken = tmp_path / "python3"
+    broken.write_text("#!/bin/sh\necho 'ensurepip is not available'\nexit 1\n")
+    broken.chmod(0o755)
+    monkeypatch.setattr(environment_module.sys, "executable", str(broken))
+    monkeypatch.setattr(environment_module, "CACHE", tmp_path / "cache")
+    monkeypatch.setattr(environment_module, "ROOT", tmp_path)
+    lock = tmp_path / "requirements.lock"
+    lock.write_text("")
+    with pytest.raises(environment_module.Unable) as refused:
+        environment_module.environment("service", lock)
+    assert "apt-get install python3-venv" in str(refused.value) and "ensurepip is not available" in str(refused.value)
+    assert not list((tmp_path / "cache").glob("service-*"))
+
+
+def test_another_lock_makes_another_environment_and_drops_the_old(environment_module, monkeypatch, tmp_path):
+    monkeypatch.setattr(environment_module, "CACHE", tmp_path / "cache")
+    monkeypatch.setattr(environment_module, "ROOT", tmp_path)
+    lock = tmp_path / "requirements.lock"
+    lock.write_text("# one\n")
+    first = environment_module.environment("service", lock)
+    assert first.exists() and environment_module.environment("service", lock) == first
+    lock.write_text("# two\n")
+    second = environment_module.environment("service", lock)
+    assert second != first and second.exists() and not first.exists()
+
+
+def test_every_dependency_is_locked_with_hashes_and_both_locks_agree():
+    def pins(path):
+        lines = path.read_text().splitlines()
+        return {line.split("==")[0]: line.split("==")[1].split(" ")[0] for line in lines if line[:1].isalnum()}
+
+    service, tests = pins(ROOT / "deploy" / "requirements.lock"), pins(ROOT / "tests" / "requirements.lock")
+    assert service.items() <= tests.items()
+    project = tomllib.loads((ROOT / "pyproject.toml").read_text())["project"]
+    direct = [*project["dependencies"], *project["optional-dependencies"]["service"]]
+    assert {name.lower(): version for name, version in (entry.split("==") for entry in direct)}.items() <= service.items()
+    for path in (ROOT / "deploy" / "requirements.lock", ROOT / "tests" / "requirements.lock"):
+        entries = re.split(r"\n(?=[a-z0-9])", path.read_text())[1:]
+        assert entries and all("--hash=sha256:" in entry for entry in entries)
