@@ -10,9 +10,10 @@ _VALUE = re.compile(r"^(\S+)\s*=\s*(\S+)\s*$")
 class Netlist:
     """One ngspice deck that grows circuit by circuit; every circuit has node names of its own and shares only ground."""
 
-    def __init__(self):
-        self.cards, self.commands, self.wanted = [], [], []
-        self._analysed = 0
+    def __init__(self, signed=False):
+        """`signed`: report values with their sign, which only dc has, instead of magnitudes."""
+        self.cards, self.wanted = [], []
+        self._form = "{}" if signed else "abs({})"
 
     def add(self, *cards):
         """Adds element cards; a source is written by `source`."""
@@ -33,19 +34,19 @@ class Netlist:
             node = following
 
     def measure(self, circuit, frequency, **expressions):
-        """Magnitudes wanted of one circuit: name -> a node pair ("a", "b"), a node "a", or "i:source"."""
+        """Values wanted of one circuit: name -> a node pair ("a", "b"), a node "a", or "i:source"."""
         self.wanted.append((circuit, frequency, expressions))
 
     def run(self):
-        """{(circuit, name): magnitude}"""
+        """{(circuit, name): value}"""
         script = ["set numdgt=15", "set noaskquit"]
         for circuit, frequency, expressions in self.wanted:
             script.append(f"ac lin 1 {frequency!r} {frequency!r}" if frequency else "op")
             for name, what in expressions.items():
-                script.append(f"let {circuit}_{name} = abs({_expression(what)})")
+                script.append(f"let {circuit}_{name} = {self._form.format(_expression(what))}")
                 script.append(f"print {circuit}_{name}")
             script.append("destroy all")
-        deck = "circuits of the loading error check\n" + _OPTIONS + "\n".join(self.cards) + "\n.control\n" + "\n".join(script) + "\nquit\n.endc\n.end\n"
+        deck = "circuits of a test\n" + _OPTIONS + "\n".join(self.cards) + "\n.control\n" + "\n".join(script) + "\nquit\n.endc\n.end\n"
         done = subprocess.run(["ngspice", "-b"], input=deck, capture_output=True, text=True, timeout=300, check=False)
         found = {}
         for line in done.stdout.splitlines():
