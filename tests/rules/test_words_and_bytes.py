@@ -1,0 +1,56 @@
+"""Numbers in sentences, and canonical JSON against the reference implementation of RFC 8785."""
+import math
+
+import pytest
+import rfc8785
+from hypothesis import given
+from hypothesis import strategies as st
+from precontact_rules.authoring.units import bundled
+from precontact_rules.canonical import canonical_bytes, digest
+from precontact_rules.phrase import joined, number_text
+
+UNITS = bundled()
+
+
+@pytest.mark.parametrize("value, unit, language, text", [
+    (2497123.0, "ohm", "en", "2.497 MΩ"), (0.8889, "volt", "en", "888.9 mV"), (-0.0769, "percent", "en", "-7.69 %"), (0.00004, "ampere", "en", "40 µA"),
+    (999.96, "volt", "en", "1 kV"), (12.5, "volt", "es", "12,5 V"), (0.0, "ampere", "en", "0 A"), (-0.0, "ampere", "en", "0 A"), (None, "ohm", "es", "(sin valor)"),
+    (1e-10, "farad", "en", "100 pF"), (0.25, "ratio", "en", "0.25"), (3e13, "ohm", "en", "30000 GΩ"), (math.pi / 2, "radian", "en", "1.571 rad"),
+])
+def test_numbers_as_a_person_reads_them(value, unit, language, text):
+    assert number_text(value, unit, UNITS, language).replace("\u00a0", " ") == text
+
+
+def test_ties_round_half_up_on_the_exact_value():
+    # 1.00025 is a binary fraction away from the tie, 1.03125 = 1 + 1/32 is a tie at five digits only: four digits of 1000.5 are a true tie
+    assert number_text(1000.5, "ratio", UNITS, "en") == "1001"
+    assert number_text(1002.5, "ratio", UNITS, "en") == "1003"
+
+
+@given(st.floats(allow_nan=False, allow_infinity=False).filter(lambda x: x == 0 or 1e-11 < abs(x) < 1e12))
+def test_four_digits_are_within_half_a_unit_of_the_fourth(value):
+    text = number_text(value, "ratio", UNITS, "en").replace("\u00a0", "")
+    assert float(text) == pytest.approx(value, rel=5.0001e-4)
+
+
+def test_lists_in_a_sentence():
+    assert joined([], "en") == "" and joined(["a"], "en") == "a"
+    assert joined(["a", "b", "c"], "en") == "a, b and c" and joined(["a", "b"], "es") == "a y b"
+
+
+JSON = st.recursive(st.none() | st.booleans() | st.floats(allow_nan=False, allow_infinity=False) | st.integers(1 - 2 ** 53, 2 ** 53 - 1) | st.text(),
+                    lambda inner: st.lists(inner, max_size=4) | st.dictionaries(st.text(), inner, max_size=4), max_leaves=12)
+
+
+@given(JSON)
+def test_canonical_bytes_are_rfc_8785(data):
+    assert canonical_bytes(data) == rfc8785.dumps(data)
+
+
+@pytest.mark.parametrize("number", [1.0, 1e21, 1e-7, 123456789012345680000.0, 5e-324, 1e16, 0.00001, 9007199254740991, -0.0, 1.7976931348623157e308])
+def test_awkward_numbers(number):
+    assert canonical_bytes([number]) == rfc8785.dumps([number])
+
+
+def test_a_digest_does_not_depend_on_spelling():
+    assert digest({"a": 1.0, "b": [2]}) == digest({"b": [2.0], "a": 1})
