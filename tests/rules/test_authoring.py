@@ -15,7 +15,7 @@ from precontact_rules.authoring.expression import ExpressionFault, parse
 from precontact_rules.authoring.release import changed_releases, proved, release
 
 HERE = Path(__file__).parent
-DEMO = HERE / "demo"
+DEMO = HERE / "example"
 BROKEN = yaml.safe_load((HERE / "broken.yaml").read_text())
 
 

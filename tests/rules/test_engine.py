@@ -12,7 +12,7 @@ from hypothesis import strategies as st
 from precontact_rules import InputProblems, RuleSet
 from precontact_rules.authoring.build import build, canonical
 
-DEMO = Path(__file__).parent / "demo"
+DEMO = Path(__file__).parent / "example"
 
 
 @pytest.fixture(scope="module")
