@@ -20,7 +20,7 @@ def environment(name, lock):
     """Path of a Python that has exactly what `lock` names; made if it is not there yet."""
     if sys.version_info < LEAST_PYTHON:
         raise Unable(f"Python {'.'.join(map(str, LEAST_PYTHON))} or later is needed; this is {sys.version.split()[0]}.")
-    key = hashlib.sha256(lock.read_bytes() + sys.version.encode() + os.fsencode(sys.executable)).hexdigest()[:12]
+    key = hashlib.sha256(lock.read_bytes() + sys.version.encode() + os.fsencode(sys.base_prefix)).hexdigest()[:12]
     folder = CACHE / f"{name}-{key}"
     python = folder / "bin" / "python"
     CACHE.mkdir(exist_ok=True)
