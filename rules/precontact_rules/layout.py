@@ -22,10 +22,15 @@ class Layout:
         """(whether the result belongs to this branch, its finished form or None)."""
         if output.absent is None:
             return True, None if output.place is not None else {"value": output.fixed}
-        if any(path not in applicable for path in output.absent.needs or self.model.inputs_of(output.formula["name"])):
+        if any(path not in applicable for path in output.absent.needs) or self._elsewhere(output.formula["name"], applicable):
             return False, None
         because = output.formula.get("absent_because")
         if because is not None:
             return True, {"value": None, "reason": because[self.language]}
         keys = [self.model.slots[self.model.slot_index[path]].pointer.replace("/*", "") for path in output.absent.needs]
         return bool(keys), {"value": None, "reason": self.texts["needs-input"][self.language].replace("{names}", ", ".join(keys))}
+
+    def _elsewhere(self, name, applicable):
+        """Whether every branch-bound input that the formula mentions belongs to other branches."""
+        bound = [path for path in self.model.inputs_of(name) if self.model.slots[self.model.slot_index[path]].only is not None]
+        return bool(bound) and not any(path in applicable for path in bound)
