@@ -10,6 +10,7 @@ from scipy.optimize import brentq
 
 from precontact_rules import InputProblems
 
+from .loop_bodies import any_body, milliammeter, two_wire, voltmeter
 from .loops import CONNECTIONS, SLOPE, TOP, simulate
 
 DRAWS = 1_000_000
@@ -35,23 +36,6 @@ def interval(answer, name):
 def codes(answer):
     """The codes of an answer's findings."""
     return [finding["code"] for finding in answer["findings"]]
-
-
-def voltmeter(ohms):
-    """A voltage input."""
-    return {"function": "voltage", "input_resistance_ohm": ohms}
-
-
-def milliammeter(ohms):
-    """A current input."""
-    return {"function": "current", "burden_resistance_ohm": ohms}
-
-
-def two_wire(connection, instrument, milliamps=12, **more):
-    """A 24 V loop with a 12 V transmitter and 250 ohm."""
-    body = {"loop": "two-wire", "connection": connection, "signal": "4-20-ma", "instrument": instrument, "supply": {"voltage_volt": 24},
-            "liftoff": {"voltage_volt": 12}, "receiver": {"resistance_ohm": 250}, "transmitter": {"output_current_ampere": milliamps / 1000}}
-    return {**body, **more}
 
 
 # ---- ngspice ---------------------------------------------------------------------------------------------------------------------------
@@ -165,7 +149,8 @@ def test_the_smallest_sufficient_resistance_just_keeps_the_limit(rule_set, loop,
 @pytest.mark.parametrize("seed", range(20))
 def test_the_largest_sufficient_burden_just_leaves_enough_voltage(rule_set, seed):
     rng = np.random.default_rng(seed)
-    corners = {"low_current_ampere": 0.004, "low_voltage_volt": float(rng.uniform(8, 16)), "high_current_ampere": 0.022, "high_voltage_volt": float(rng.uniform(8, 14))}
+    corners = {"low_current_ampere": 0.004, "low_voltage_volt": float(rng.uniform(8, 16)),
+               "high_current_ampere": 0.022, "high_voltage_volt": float(rng.uniform(8, 14))}
     body = two_wire("in-series", milliammeter(1.0), bridged=True, liftoff=corners, supply={"voltage_volt": float(rng.uniform(22, 40))})
     burden = value(ask(rule_set, body), "largest_sufficient_burden_ohm")
     left = ask(rule_set, {**body, "instrument": milliammeter(burden)})["results"]
@@ -317,6 +302,7 @@ def test_monte_carlo_agrees(rule_set, number, body):
 
 # ---- properties ----------------------------------------------------------------------------------------------------------------------------
 
+ACROSS = CONNECTIONS["two-wire"][:3]
 OFTEN = settings(max_examples=150, deadline=None, suppress_health_check=[HealthCheck.function_scoped_fixture])
 
 
@@ -338,7 +324,7 @@ def test_more_burden_never_leaves_more_headroom(rule_set, milliamps, first, seco
 
 
 @OFTEN
-@given(milliamps=st.floats(4, 20), ohms=st.floats(100, 1e9), scale=st.integers(-3, 5), connection=st.sampled_from(["across-receiver", "across-transmitter", "across-supply"]))
+@given(milliamps=st.floats(4, 20), ohms=st.floats(100, 1e9), scale=st.integers(-3, 5), connection=st.sampled_from(ACROSS))
 def test_voltages_and_resistances_scale_together(rule_set, milliamps, ohms, scale, connection):
     """All voltages and resistances doubled leave every current as it was, to the last bit."""
     factor = 2.0 ** scale
@@ -355,15 +341,15 @@ def test_voltages_and_resistances_scale_together(rule_set, milliamps, ohms, scal
 @OFTEN
 @given(milliamps=st.floats(4, 20), ohms=st.floats(500, 1e7), low=st.floats(-1000, 1000), span=st.floats(1e-3, 1e5), factor=st.integers(-8, 8))
 def test_the_process_unit_scales(rule_set, milliamps, ohms, low, span, factor):
-    answers = [ask(rule_set, two_wire("across-receiver", voltmeter(ohms), milliamps, process={"low_process_unit": low * k, "high_process_unit": (low + span) * k}))
-               for k in (1.0, 2.0 ** factor)]
+    ranges = [{"low_process_unit": low * k, "high_process_unit": (low + span) * k} for k in (1.0, 2.0 ** factor)]
+    answers = [ask(rule_set, two_wire("across-receiver", voltmeter(ohms), milliamps, process=process)) for process in ranges]
     first, second = (value(a, "process_value_shift_process_unit") for a in answers)
     assert second == first * 2.0 ** factor
     assert value(answers[0], "shift_percent") == value(answers[1], "shift_percent")
 
 
 @OFTEN
-@given(milliamps=st.floats(4, 20), ohms=st.floats(300, 1e6), narrow=st.floats(0, 40), wide=st.floats(0, 40), connection=st.sampled_from(["across-receiver", "across-transmitter", "across-supply"]))
+@given(milliamps=st.floats(4, 20), ohms=st.floats(300, 1e6), narrow=st.floats(0, 40), wide=st.floats(0, 40), connection=st.sampled_from(ACROSS))
 def test_a_wider_spread_never_narrows_the_interval(rule_set, milliamps, ohms, narrow, wide, connection):
     narrow, wide = sorted((narrow, wide))
     ends = []
@@ -372,55 +358,6 @@ def test_a_wider_spread_never_narrows_the_interval(rule_set, milliamps, ohms, na
         ends.append(interval(ask(rule_set, body), "receiver_current_after_ampere"))
     slack = 1e-12 * abs(ends[0][1])
     assert ends[1][0] <= ends[0][0] + slack and ends[1][1] >= ends[0][1] - slack
-
-
-def spread_of(value_strategy):
-    """A number as a request may state it: plain or with one of its spreads."""
-    return st.one_of(value_strategy, value_strategy, st.builds(lambda v, p: {"value": v, "half_width_percent": p}, value_strategy, st.floats(0, 100)),
-                     st.builds(lambda a, b: {"between": [a, b]}, value_strategy, value_strategy))
-
-
-ohms_of_any_size = spread_of(st.one_of(st.floats(1e-300, 1e6), st.floats(1, 1e4)))
-amps, volts = spread_of(st.one_of(st.floats(0, 1), st.just(0.0))), spread_of(st.one_of(st.floats(0, 1000), st.just(0.0)))
-process_values = spread_of(st.floats(-1e6, 1e6))
-
-
-def some_of(draw, **fields):
-    """An object with some of the fields."""
-    return {key: draw(strategy) for key, strategy in fields.items() if draw(st.booleans())}
-
-
-@st.composite
-def any_body(draw):
-    """Bodies of the right shape with unreasonable numbers."""
-    loop = draw(st.sampled_from(list(CONNECTIONS)))
-    body = {"loop": loop, "connection": draw(st.sampled_from(CONNECTIONS[loop])), "receiver": {"resistance_ohm": draw(ohms_of_any_size)},
-            "signal": draw(st.sampled_from(["4-20-ma", "0-20-ma", "1-5-v", "0-10-v"])),
-            "process": some_of(draw, level_percent=st.floats(-100, 200), value_process_unit=process_values, low_process_unit=st.floats(-10, 10),
-                               high_process_unit=st.floats(-10, 10), scaling=st.sampled_from(["linear", "square-root"]), unit=st.just("bar")),
-            "wire": some_of(draw, resistance_ohm=ohms_of_any_size, length_metre=st.floats(0, 1e6), conductor=st.just("awg-18-solid"),
-                            temperature_celsius=st.floats(-100, 300), cable=st.just("twisted-pair-1-mm2")),
-            "controller": some_of(draw, gain_ratio=st.floats(0, 1e4), integral_time_second=st.floats(1e-300, 1e6), in_manual=st.booleans())}
-    function = draw(st.sampled_from(["voltage", "current", "clamp", "injector"]))
-    fields = {"voltage": ("input_resistance_ohm", "cold_resistance_ohm"), "current": ("burden_resistance_ohm",)}.get(function, ())
-    body["instrument"] = {"function": function, **some_of(draw, **{name: ohms_of_any_size for name in fields})}
-    levels = {"level_percent": spread_of(st.floats(-100, 200)), "value_process_unit": process_values}
-    if loop == "voltage-signal":
-        body["transmitter"] = {"output_resistance_ohm": draw(ohms_of_any_size), **some_of(draw, output_voltage_volt=volts, current_limit_ampere=st.floats(1e-9, 10))}
-    else:
-        body["transmitter"] = some_of(draw, output_current_ampere=amps, top_current_ampere=st.floats(1e-300, 1))
-        body |= some_of(draw, bridged=st.booleans(), gap_time_second=st.floats(1e-9, 1e6))
-        body["communication"] = some_of(draw, used=st.booleans(), device_capacitance_farad=st.floats(0, 1))
-        body["test_diode"] = some_of(draw, forward_voltage_volt=st.floats(1e-9, 5))
-        body["receiver"] |= some_of(draw, on_failure=st.sampled_from(["follows", "low", "high", "holds"]))
-        levels["current_ampere"] = amps
-    if loop == "two-wire":
-        body["supply"] = some_of(draw, voltage_volt=volts, resistance_ohm=ohms_of_any_size, current_limit_ampere=st.floats(1e-9, 10))
-        body["liftoff"] = some_of(draw, voltage_volt=volts, low_current_ampere=st.floats(0, 1), low_voltage_volt=volts, high_current_ampere=st.floats(0, 1), high_voltage_volt=volts)
-    body |= some_of(draw, limit_percent=st.floats(1e-9, 99), safety_function=st.booleans(), contact_time_second=st.floats(1e-9, 1e6))
-    body["setpoints"] = [{"label": "x", "direction": draw(st.sampled_from(["rising", "falling"])), "action": draw(st.sampled_from(["alarm", "trip"])),
-                          **some_of(draw, **levels), **some_of(draw, delay_second=st.floats(0, 100))} for _ in range(draw(st.integers(0, 3)))]
-    return body
 
 
 @settings(max_examples=300, deadline=None, suppress_health_check=[HealthCheck.function_scoped_fixture, HealthCheck.too_slow])
