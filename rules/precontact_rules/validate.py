@@ -40,7 +40,7 @@ def compile_intake(bundle, name):
         branch = body.get(branch_field["key"])
         run.branch = branch if type(branch) is str and branch in branches else None
         for step in steps:
-            step.take(body.get(step.key), run, "")
+            _take(step, body.get(step.key), run, "")
         if not body.keys() <= keys:
             _unknown(body, keys, run.problems, "")
         if run.problems:
@@ -49,6 +49,31 @@ def compile_intake(bundle, name):
         return run
 
     return intake
+
+
+def _take(step, x, run, pointer):
+    """Let a step take its part of the body. What a part gives that is absent, or is only the id of an entry, never changes: it is kept."""
+    if step.kept is None or not (x is None or type(x) is str and step.by_id):
+        step.take(x, run, pointer)
+        return
+    kept = step.kept.get((run.branch, x))
+    if kept is None:
+        kept = Intake()
+        kept.branch = run.branch
+        step.take(x, kept, pointer)
+        if kept.problems:
+            run.problems.extend(kept.problems)
+        else:
+            step.kept[run.branch, x] = kept
+    run.states += kept.states
+    run.values += kept.values
+    if kept.assumed:
+        run.assumed += kept.assumed
+    if kept.sizes:
+        run.sizes.update(kept.sizes)
+    if kept.titles:
+        run.titles.update(kept.titles)
+        run.origins.update(kept.origins)
 
 
 def _compiled(node, bundle):
@@ -92,6 +117,8 @@ def _asked(field):
 class _Leaf:
     """A number, choice, switch, text or curve outside any list."""
 
+    kept = None
+
     def __init__(self, field, slot):
         self.key, self.field, self.slot = field["key"], field, slot
         self._read = reader(field, slot)
@@ -130,20 +157,28 @@ class _Group:
     """A named object of fields."""
 
     def __init__(self, field, steps):
+        self.kept, self.by_id = {}, False
         self.key, self.field, self.steps = field["key"], field, steps
         self.keys = frozenset(step.key for step in steps)
 
     def take(self, x, run, pointer):
         pointer = f"{pointer}/{self.key}"
+        before = len(run.problems)
         if not _applies(self.field, run, x is not None, pointer):
-            x = None
-        if x is None:
             x = {}
+        elif x is None:
+            x = {}
+            missing = self.field.get("required")
+            for step in self.steps:
+                _take(step, None, run, pointer)
+            if missing and len(run.problems) == before:
+                _required(self.field, run, pointer)
+            return
         elif type(x) is not dict:
             run.problems.append(Problem(pointer, "wrong-type", f"{shown(x)} is not an object; its members are {', '.join(sorted(self.keys))}"))
             x = {}
         for step in self.steps:
-            step.take(x.get(step.key), run, pointer)
+            _take(step, x.get(step.key), run, pointer)
         if not x.keys() <= self.keys:
             _unknown(x, self.keys, run.problems, pointer)
 
@@ -199,6 +234,7 @@ class _Reference:
     """A catalogue reference outside any list."""
 
     def __init__(self, field, path, children, bundle):
+        self.kept, self.by_id = {}, True
         self.key, self.field, self.path = field["key"], field, path
         self.catalogue = _Catalogue(field, bundle)
         self.steps = [_Leaf(f, slot) for f, slot, _ in children]
@@ -224,6 +260,7 @@ class _List:
     """A list of objects: one axis; every field is a column."""
 
     def __init__(self, field, children, bundle):
+        self.kept, self.by_id = {}, False
         self.key, self.field = field["key"], field
         self.columns = [_Column(f, slot) if f["kind"] != "reference" else _ReferenceColumns(f, slot, inner, bundle) for f, slot, inner in children]
         self.keys = frozenset(c.key for c in self.columns)
