@@ -197,7 +197,7 @@ class Emitter:
 
     def _op_lookup(self, name, node, lane):
         argument, scalar = self._name(node.args[0], lane), not self._axes(node, lane)
-        key = "lookup_" + "_".join(str(e).replace(".", "_") for e in node.extra)
+        key = f"lookup_{'one' if scalar else 'many'}_" + "_".join(str(e).replace(".", "_") for e in node.extra)
         look = self.graph.check.lookup(node.extra)
         self.globals[key] = look.one if scalar else look.many
         data = f", v[{node.extra[1]}]" if node.extra[0] == "curve" else ""

@@ -8,7 +8,7 @@ import sys
 import pytest
 from precontact_rules import released
 
-CHECKS = ("loading-error", "device-trip", "loop-shift")
+CHECKS = ("loading-error", "device-trip", "loop-shift", "induced-voltage")
 JSON = "application/json"
 
 ASK_EVERYTHING = """
