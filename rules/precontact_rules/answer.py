@@ -41,8 +41,8 @@ class AnswerWriter:
             "input_digest": input_digest,
             "verdict": verdict,
             "findings": findings,
-            "results": self._reported(layout, reader),
-            "working": self._worked(layout, reader),
+            "results": layout.results(results, reader),
+            "working": layout.working(results, reader),
             "assumptions": self._assumptions(plan, results, intake, language),
             "cautions": self._caution_list(plan, results, holding, language),
             "unverified": weak,
@@ -75,28 +75,20 @@ class AnswerWriter:
 
     def _weak(self, plan, intake, decided):
         """Unverified numbers on which an acceptable verdict rests, by name, with source and standing."""
-        found = {}
-        for leaf in plan.leaves(decided):
-            for name, origin in self._origins(leaf, intake):
-                if origin and self.model.is_weak(origin):
-                    found.setdefault(name, {"name": name, "source": origin["source"], "standing": origin["standing"]})
-        return list(found.values())
-
-    def _origins(self, leaf, intake):
-        model, bundle = self.model, self.model.bundle
-        if leaf[0] == "constant":
-            return [(leaf[1], model.constant(leaf[1]))]
-        if leaf[0] == "lookup" and leaf[1] == "table":
-            return [(leaf[2], bundle["tables"][leaf[2]])]
-        if leaf[0] == "column":
-            return model.column_origins(leaf[1], leaf[2])
-        index = leaf[-1]
-        slot = model.slots[index]
-        origin = intake.origins.get(index)
-        origins = origin if isinstance(origin, list) else [origin]
-        if any(i == index or (isinstance(i, tuple) and i[0] == index) for i in intake.assumed):
-            origins = origins + [slot.field["assume"]]
-        return [(slot.path, o) for o in origins]
+        fixed, slots = plan.basis(decided)
+        found = dict(fixed)
+        origins, assumed = intake.origins, intake.assumed
+        for index in slots:
+            origin = origins.get(index)
+            if origin is not None:
+                for record in origin if type(origin) is list else (origin,):
+                    if record is not None and self.model.is_weak(record):
+                        found.setdefault(self.model.slots[index].path, record)
+            elif index in assumed or any(type(i) is tuple and i[0] == index for i in assumed):
+                record = self.model.slots[index].field["assume"]
+                if self.model.is_weak(record):
+                    found.setdefault(self.model.slots[index].path, record)
+        return [{"name": name, "source": record["source"], "standing": record["standing"]} for name, record in found.items()]
 
     # ---- numbers -------------------------------------------------------------------------------------------------------------------
 
@@ -105,15 +97,6 @@ class AnswerWriter:
         if layout is None:
             layout = plan.layouts[language] = Layout(self.model, plan, self.texts, language)
         return layout
-
-    @staticmethod
-    def _reported(layout, reader):
-        return {key: reader.result(output) if fixed is None else fixed for key, output, fixed in layout.results}
-
-    @staticmethod
-    def _worked(layout, reader):
-        return [{"name": name, "value": reader.plain(output), "unit": unit, "formula": text, "source": source}
-                for name, unit, text, source, output in layout.working]
 
     # ---- what was assumed, what to mind ------------------------------------------------------------------------------------------------
 

@@ -10,10 +10,12 @@ import re
 
 _LAID_OUT_OTHERWISE = re.compile(r"\d\.0(?![\d])|\d[eE][-+]?\d|\d{17}|[\ud800-\U0010ffff]")
 
+_encode = json.JSONEncoder(sort_keys=True, separators=(",", ":"), ensure_ascii=False, allow_nan=False).encode
+
 
 def canonical_bytes(data):
     """RFC 8785 bytes of JSON data. Raises ValueError for a number that JSON cannot hold."""
-    text = json.dumps(data, sort_keys=True, separators=(",", ":"), ensure_ascii=False, allow_nan=False)
+    text = _encode(data)
     if _LAID_OUT_OTHERWISE.search(text):
         text = _written(data)
     return text.encode()

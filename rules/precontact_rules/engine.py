@@ -60,7 +60,7 @@ class Question:
         if plan.exact:
             return plan, plan.run(intake.values, _NO_SAMPLES, _NO_SAMPLES, None, intake.sizes), None, _NO_SAMPLES
         with np.errstate(all="ignore"):
-            values, sampled, forms, beyond = self._sample(intake)
+            values, sampled, forms, beyond = self._sample(intake, plan)
             uniforms = [self._points.uniform(len(forms) + k) for k in range(plan.uniform_count)]
             drawn = self._points.drawn("".join(forms) + "r" * plan.uniform_count)
             results = plan.run(values, sampled, uniforms, drawn, intake.sizes)
@@ -74,38 +74,41 @@ class Question:
 
     # ---- samples -------------------------------------------------------------------------------------------------------------------
 
-    def _sample(self, intake):
+    def _sample(self, intake, plan):
         """Best estimates, sampled arrays, forms of the dimensions used, slots beyond their range; dimensions are handed out in slot order, then in item order."""
         values, sampled, forms, beyond = list(intake.values), [None] * len(intake.values), [], []
-        for index, state in enumerate(intake.states):
-            if state == "u":
-                spread = values[index]
-                sampled[index] = self._spread(spread, len(forms))
-                values[index] = spread[1]
-                forms.append(spread[0])
-                if self._leaves_range(spread, index):
-                    beyond.append(index)
-            elif state in ("L", "U", "N", "V"):
-                items = values[index]
-                kind = self.model.slots[index].kind
-                if kind == "text":
-                    continue
-                if kind != "number":
-                    values[index] = np.array([bool(i) for i in items] if kind == "switch" else items)
-                    continue
-                values[index] = np.array([np.nan if i is None else i[1] if isinstance(i, tuple) else i for i in items])
-                if state in ("U", "V"):
-                    rows = []
-                    for item in items:
-                        if isinstance(item, tuple):
-                            rows.append(self._spread(item, len(forms)))
-                            forms.append(item[0])
-                            if self._leaves_range(item, index) and index not in beyond:
-                                beyond.append(index)
-                        else:
-                            rows.append(np.full(POINTS, np.nan if item is None else item))
-                    sampled[index] = np.stack(rows)
+        for index in sorted(plan.spreads + plan.lists) if plan.lists else plan.spreads:
+            if type(values[index]) is list:
+                self._sample_list(index, values, sampled, forms, beyond)
+                continue
+            spread = values[index]
+            sampled[index] = self._spread(spread, len(forms))
+            values[index] = spread[1]
+            forms.append(spread[0])
+            if self._leaves_range(spread, index):
+                beyond.append(index)
         return values, sampled, forms, beyond
+
+    def _sample_list(self, index, values, sampled, forms, beyond):
+        items, kind = values[index], self.model.slots[index].kind
+        if kind == "text":
+            return
+        if kind != "number":
+            values[index] = np.array([bool(i) for i in items] if kind == "switch" else items)
+            return
+        values[index] = np.array([np.nan if i is None else i[1] if isinstance(i, tuple) else i for i in items])
+        if not any(isinstance(i, tuple) for i in items):
+            return
+        rows = []
+        for item in items:
+            if isinstance(item, tuple):
+                rows.append(self._spread(item, len(forms)))
+                forms.append(item[0])
+                if self._leaves_range(item, index) and index not in beyond:
+                    beyond.append(index)
+            else:
+                rows.append(np.full(POINTS, np.nan if item is None else item))
+        sampled[index] = np.stack(rows)
 
     def _spread(self, spread, dimension):
         form, value, size = spread

@@ -1,4 +1,5 @@
 """What of an answer is the same for every request of one signature and language, prepared once."""
+import math
 
 
 class Layout:
@@ -8,15 +9,56 @@ class Layout:
         self.model, self.texts, self.language = model, texts, language
         ordered = sorted(model.formulas, key=lambda f: f["order"])
         applicable = model.applicable(plan.states)
-        self.results = []           # (key, output, finished result or None where the numbers decide)
+        results, working, self._names = [], [], {"least": -math.inf, "most": math.inf}
         for formula in ordered:
+            output = plan.outputs[formula["name"]]
             if formula["show"] == "result":
-                output = plan.outputs[formula["name"]]
                 keep, fixed = self._fixed(output, applicable)
                 if keep:
-                    self.results.append((formula["key"], output, fixed))
-        self.working = [(formula["name"], formula["unit"], formula["text"], formula["source"], plan.outputs[formula["name"]])
-                        for formula in ordered if formula["show"] != "hidden" and plan.outputs[formula["name"]].absent is None]
+                    results.append(f"{formula['key']!r}: {self._result(output, fixed)}")
+            if formula["show"] != "hidden" and output.absent is None:
+                texts = f"'unit': {formula['unit']!r}, 'formula': {formula['text']!r}, 'source': {formula['source']!r}"
+                working.append(f"{{'name': {formula['name']!r}, 'value': {self._plain(output)}, {texts}}}")
+        self.results = self._function(f"{{{', '.join(results)}}}")
+        self.working = self._function(f"[{', '.join(working)}]")
+
+    # A listing is one expression over the tuple of results; only what has an interval, an axis or a name asks the reader.
+
+    def _function(self, expression):
+        space = dict(self._names)
+        exec(compile(f"def listed(r, reader):\n    return {expression}", "<layout>", "exec"), space)
+        return space["listed"]
+
+    def _named(self, value):
+        name = f"c{len(self._names)}"
+        self._names[name] = value
+        return name
+
+    def _result(self, output, fixed):
+        if fixed is not None:
+            return self._named(fixed)
+        if output.samples is not None or output.axes or output.names or output.imaginary is not None:
+            return f"reader.result({self._named(output)})"
+        place = f"r[{output.place}]"
+        if output.formula["type"] == "boolean":
+            return f"{{'value': {place}}}"
+        nothing = self._named({"value": None, "reason": self._no_value(output.formula)})
+        return f"({{'value': {self._scaled(place, output)}}} if least < {place} < most else {nothing})"
+
+    def _plain(self, output):
+        if output.place is None or output.axes or output.imaginary is not None:
+            return f"reader.plain({self._named(output)})"
+        place = f"r[{output.place}]"
+        if output.formula["type"] == "boolean":
+            return place
+        return f"({self._scaled(place, output)} if least < {place} < most else None)"
+
+    @staticmethod
+    def _scaled(place, output):
+        return f"{place} + 0.0" if output.factor == 1 else f"{place} / {output.factor!r} + 0.0"      # + 0.0 turns a negative zero into zero
+
+    def _no_value(self, formula):
+        return formula["absent_because"][self.language] if "absent_because" in formula else self.texts["no-value"][self.language]
 
     def _fixed(self, output, applicable):
         """(whether the result belongs to this branch, its finished form or None)."""

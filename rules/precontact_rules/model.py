@@ -4,6 +4,7 @@ import numpy as np
 from .declaration import Check
 from .exact_math import NAN
 from .kernels import Lookup
+from .phrase import Template
 
 UNVERIFIED = ("practice", "informal", "memory")
 
@@ -20,6 +21,7 @@ class CheckModel:
         self.slots = Check(bundle, name).slots
         self.slot_index = {slot.path: index for index, slot in enumerate(self.slots)}
         self.formula_named = {f["name"]: f for f in self.formulas}
+        self.mentioned = {name for f in self.findings for text in f["sentence"].values() for name in Template(text).names()}
         self._axis_named = {a["name"]: a for a in self.axes}
         self._lookups, self._applicable, self._inputs = {}, {}, {}
 
@@ -87,6 +89,12 @@ class CheckModel:
         entries = self.bundle["entries"][declared["of"]]
         values = ((entry, entries[entry]["fields"].get(column)) for entry in self.entry_ids(axis))
         return [(f"{entry}.{column}", value) for entry, value in values if isinstance(value, dict)]
+
+    def fixed_origins(self, leaf):
+        """(name, record) of the numbers of the bundle that a constant, column or table look-up reads."""
+        if leaf[0] == "constant":
+            return [(leaf[1], self.constant(leaf[1]))]
+        return self.column_origins(*leaf[1:]) if leaf[0] == "column" else [(leaf[2], self.bundle["tables"][leaf[2]])]
 
     def axis_from(self, axis):
         """list, entries, table or count."""

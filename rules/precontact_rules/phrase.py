@@ -32,6 +32,11 @@ def _rounded(value):
     """(decimal exponent of the first digit, the significant digits) of a value >= 0, rounded half up on its exact binary value."""
     if value == 0:
         return 0, "0"
+    shortest = repr(value)
+    if "e" in shortest or not shortest.rstrip("0").endswith("5"):
+        # Not a tie, which would end in 5 (and be written without an exponent): the C library's rounding of the exact value is the same.
+        mantissa, _, power = f"{value:.{DIGITS - 1}e}".partition("e")
+        return int(power), mantissa.replace(".", "").rstrip("0") or "0"
     exact = Decimal(value)
     exponent = exact.adjusted()
     rounded = exact.quantize(Decimal(1).scaleb(exponent - DIGITS + 1), rounding=ROUND_HALF_UP)
@@ -62,6 +67,10 @@ class Template:
             self.parts.append(("list", listed.groups()) if listed else ("name", place.group(1).strip()))
             end = place.end()
         self.parts.append(("words", text[end:]))
+
+    def names(self):
+        """Names of the formulas that the sentence needs."""
+        return [content if kind == "name" else content[1] for kind, content in self.parts if kind != "words"]
 
 
 compile_template = Template

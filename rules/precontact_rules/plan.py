@@ -58,7 +58,9 @@ class Plan:
         emitter = Emitter(graph)
         self._fast, self._safe, self._counts = emitter.compile(self._wanted)
         self.uniform_count = len(emitter.uniforms)     # those that something reported rests on
-        self._leaves = {}
+        self._basis = {}
+        self.spreads = [i for i, state in enumerate(states) if state == "u" and model.slots[i].kind == "number"]
+        self.lists = [i for i, state in enumerate(states) if model.slots[i].axis and state in ("L", "U", "N", "V")]
         self.exact = not emitter.arrays     # floats only: nothing to sample, no numpy call
 
     # ---- what is wanted ----------------------------------------------------------------------------------------------------------------
@@ -91,7 +93,7 @@ class Plan:
         return output
 
     def _place(self, output, parts, axes):
-        if output.formula["show"] == "hidden" and not output.formula.get("in_sentence", True):
+        if output.formula["show"] == "hidden" and output.formula["name"] not in self.model.mentioned:
             return
         output.place = self._want(parts[0])
         if len(parts) == 2:
@@ -121,18 +123,23 @@ class Plan:
 
     # ---- what a verdict rests on -------------------------------------------------------------------------------------------------------
 
-    def leaves(self, decided):
-        """Leaf nodes on which the conditions of findings 0..decided rest: slots, constants, columns and tables."""
-        if decided not in self._leaves:
-            found, seen = [], set()
+    def basis(self, decided):
+        """({name: record} of the unverified numbers of the bundle, slots) on which the conditions of findings 0..decided rest."""
+        if decided not in self._basis:
+            leaves, seen = set(), set()
             queue = [n for n in self._condition_nodes[:decided + 1] if isinstance(n, Node)]
             while queue:
                 node = queue.pop()
-                if node.index in seen:
-                    continue
-                seen.add(node.index)
-                queue.extend(node.args)
-                if node.op in ("slot", "constant", "column", "lookup"):
-                    found.append((node.op,) + node.extra)
-            self._leaves[decided] = sorted(set(found), key=repr)
-        return self._leaves[decided]
+                if node.index not in seen:
+                    seen.add(node.index)
+                    queue.extend(node.args)
+                    if node.op in ("slot", "constant", "column", "lookup"):
+                        leaves.add((node.op,) + node.extra)
+            fixed, slots = {}, []
+            for leaf in sorted(leaves, key=repr):
+                if leaf[0] == "slot" or leaf[1] == "curve":
+                    slots.append(leaf[-1])
+                else:
+                    fixed.update((name, record) for name, record in self.model.fixed_origins(leaf) if self.model.is_weak(record))
+            self._basis[decided] = fixed, slots
+        return self._basis[decided]

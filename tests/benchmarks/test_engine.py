@@ -83,7 +83,7 @@ def alternated(one, other, repeat):
 def test_a_pass_over_the_points_against_hand_written_numpy(benchmark, example):
     fast, counts = compiled(example, True, "s")
     points, question = example.points, example.question("demo")
-    sampled = question._sample(question.intake(body(True)))[1]
+    sampled = question._sample(question.intake(body(True)), question.plan(question.intake(body(True))))[1]
     drawn = {slot.path: sampled[slot.index] for slot in question.model.slots}
     v, r, x, rm = (drawn[p] for p in ("source.voltage", "source.resistance", "source.reactance", "instrument.input_resistance"))
     u = points.uniform(4)
