@@ -36,6 +36,12 @@ _ABOUT = np.array([-1.0, -0.5, 0.0, 0.5, 1.0])
 NO_ENDS = (NAN, NAN)
 
 
+def even_ends(x):
+    """(low, high) of a result that rests on one uncertain input alone: on its own the points are even, so plain ends are exact."""
+    ordered = np.sort(x)
+    return _plain_ends(ordered) if ordered[-1] - ordered[0] < math.inf else NO_ENDS
+
+
 def coverage_ends(arrays, drawn):
     """[(low, high), ...] of the probabilistically symmetric 95 % interval of each 1-d array of samples; NaN where a sample has no value."""
     found = [NO_ENDS] * len(arrays)
@@ -46,7 +52,7 @@ def coverage_ends(arrays, drawn):
             found[k] = _plain_ends(ordered[k])
     elif usable:
         ends = _smooth_ends([ordered[k] for k in usable])
-        lines = [_Line(*drawn.slopes(arrays[k]), drawn) for k in usable]
+        lines = [_Line(origin, slopes, drawn) for origin, slopes in drawn.slopes([arrays[k] for k in usable])]
         _correct(ends, [(i, line) for i, line in enumerate(lines) if line.usable], drawn)
         for k, (low, high) in zip(usable, ends):
             least, most = float(ordered[k][0]), float(ordered[k][-1])
@@ -136,7 +142,7 @@ def share(holds, difference, positive, drawn):
     plain = count / POINTS
     if count in (0, POINTS) or len(drawn.forms) < 2:      # certain on every point: no correction may unsettle that
         return plain
-    line = _Line(*drawn.slopes(difference), drawn)
+    line = _Line(*drawn.slopes([difference])[0], drawn)
     if not line.usable:
         return plain
     values = line.values(drawn)

@@ -7,9 +7,9 @@ has no finite answer, and with functions that follow IEEE 754; the second runs o
 import numpy as np
 
 from . import exact_math, kernels
-from .coverage import ends_of, plain_share, share
+from .coverage import ends_of, even_ends, plain_share, share
 from .points import POINTS
-from .values import SAMPLES
+from .values import SAMPLES, sampled_leaves
 
 _INFIX = {"add": "+", "sub": "-", "mul": "*", "lt": "<", "le": "<=", "gt": ">", "ge": ">=", "eq": "==", "ne": "!=", "and": "and", "or": "or"}
 _SCALAR = {
@@ -34,7 +34,7 @@ _GLOBALS = {
     "root": __import__("math").sqrt, "div": exact_math.div, "sqrt": exact_math.sqrt, "floor": exact_math.floor, "nan": exact_math.NAN,
     "exp": exact_math.exp, "ln": exact_math.ln, "sin": exact_math.sin, "cos": exact_math.cos,
     "exp_array": exact_math.exp_array, "ln_array": exact_math.ln_array, "sin_array": exact_math.sin_array, "cos_array": exact_math.cos_array,
-    "fold_sum": exact_math.fold_sum, "ends_of": ends_of, "share": share, "plain_share": plain_share, "where": np.where, "fmin": np.fmin, "fmax": np.fmax, "arange": np.arange,
+    "fold_sum": exact_math.fold_sum, "ends_of": ends_of, "even_ends": even_ends, "share": share, "plain_share": plain_share, "where": np.where, "fmin": np.fmin, "fmax": np.fmax, "arange": np.arange,
     "at_least": kernels.at_least, "at_greatest": kernels.at_greatest,
     "ranking": kernels.ranking, "quantile": kernels.quantile, "share_place": kernels.share_place, "at_place": kernels.at_place,
     "spread_onto": kernels.spread_onto, "spread_along": kernels.spread_along, "POINTS": float(POINTS),
@@ -95,7 +95,7 @@ class Emitter:
     @staticmethod
     def _inputs(node):
         """The nodes this one's code reads. A corrected share reads the sides of its comparison, and sees by itself where they have no value."""
-        if node.op == "share" and node.args[0].op in _SIDED:
+        if node.op == "share" and node.args[0].op in _SIDED and sampled_leaves(node.args[0]) != 1:
             return (node.args[0], *node.args[0].args)
         return node.args
 
@@ -212,7 +212,7 @@ class Emitter:
     def _op_share(self, name, node, lane):
         condition = node.args[0]
         argument, axes = self._name(condition, "s"), self._axes(condition, "s")
-        if condition.op in _SIDED:
+        if condition.op in _SIDED and sampled_leaves(condition) != 1:      # on one uncertain input alone the points are even
             sides = self._operands(condition, "s", axes)
             args = [argument, *self._arg_names(condition, "s")]
             self.lines.append(_Line(name, args, f"share({argument}, {sides[0]} - {sides[1]}, {condition.op in ('gt', 'ge')}, d)"))
@@ -236,7 +236,8 @@ class Emitter:
         argument = self._name(node.args[0], "s")
         both = argument + "_ends"
         if not any(line.name == both for line in self.lines):
-            self.lines.append(_Line(both, [argument], f"ends_of({argument}, d)"))
+            even = node.args[0].axes == {SAMPLES} and sampled_leaves(node.args[0]) == 1
+            self.lines.append(_Line(both, [argument], f"even_ends({argument})" if even else f"ends_of({argument}, d)"))
         self.lines.append(_Line(name, [both], f"{both}[{part}]"))
 
     def _op_low_end(self, name, node, lane):

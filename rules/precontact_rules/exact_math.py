@@ -159,7 +159,10 @@ def sin_cos_array(x):
 
 def fold_sum(x, axis):
     """Sum along an axis in the stated order: the upper half is added onto the lower until one is left; nothing sums to 0."""
-    x = np.moveaxis(x, axis, 0)
+    if x.ndim == 2 and axis:
+        x = x.T              # moveaxis says the same and takes longer to
+    elif x.ndim > 1:
+        x = np.moveaxis(x, axis, 0)
     n = x.shape[0]
     if n == 0:
         return np.zeros(x.shape[1:])

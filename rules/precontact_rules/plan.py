@@ -3,11 +3,11 @@ import threading
 
 import numpy as np
 
-from .coverage import coverage_ends, ends_of
+from .coverage import coverage_ends, ends_of, even_ends
 from .emit import Emitter
 from .graph import Graph
 from .points import POINTS
-from .values import SAMPLES, Absent, Key, Node, Pair
+from .values import SAMPLES, Absent, Key, Node, Pair, sampled_leaves
 
 _scratch = threading.local()
 _HIDDEN_AXES = ("count", "table")
@@ -49,7 +49,7 @@ class Plan:
         for formula in model.formulas:     # in dependency order, so that no recursion grows deep
             graph.formula(formula["name"])
         self._graph, self._wanted, self._places = graph, [], {}
-        self._flat, self._deep = [], []        # places of samples to be reported with an interval: one axis, or more
+        self._single, self._flat, self._deep = [], [], []     # places of samples reported with an interval: of one input, of several, with more axes
         self.conditions = [self._condition(f.get("when")) for f in model.findings]
         self.cautions = [self._condition(c.get("when")) for c in model.declared.get("cautions", ())]
         self.assumptions = [self._condition(a.get("when")) for a in model.declared.get("assumptions", ())]
@@ -100,7 +100,7 @@ class Plan:
             output.imaginary = self._want(parts[1])
         elif SAMPLES in axes and output.formula["show"] == "result" and not parts[0].boolean:
             output.samples = self._want(parts[0], "s")
-            group = self._flat if axes == {SAMPLES} else self._deep
+            group = self._deep if axes != {SAMPLES} else self._single if sampled_leaves(parts[0]) == 1 else self._flat
             if output.samples not in group:
                 group.append(output.samples)
 
@@ -116,7 +116,8 @@ class Plan:
 
     def intervals(self, results, drawn):
         """{place of samples: (low, high)} for every result reported with an interval."""
-        found = dict(zip(self._flat, coverage_ends([results[place] for place in self._flat], drawn)))
+        found = {place: even_ends(results[place]) for place in self._single}
+        found.update(zip(self._flat, coverage_ends([results[place] for place in self._flat], drawn)))
         for place in self._deep:
             found[place] = ends_of(results[place], drawn)
         return found

@@ -77,12 +77,15 @@ class Drawn:
             self._subset = np.array([c - mean for c, mean in zip(columns, self._means)]).T.copy()
             self._factor = cholesky([[float(exact_math.fold_sum(a * b, 0)) for b in self._subset.T] for a in self._subset.T])
 
-    def slopes(self, x):
-        """(value at the origin, slopes) of the linear function of the coordinates that fits the samples `x` best on the subset."""
-        chosen = x[self._CHOSEN]
-        centre = float(exact_math.fold_sum(chosen, 0)) / SUBSET
-        sums = exact_math.fold_sum(self._subset * (chosen - centre)[:, None], 0).tolist()
-        slopes = solved(self._factor, sums)
-        for mean, slope in zip(self._means, slopes):
-            centre -= mean * slope
-        return centre, slopes
+    def slopes(self, arrays):
+        """[(value at the origin, slopes), ...] of the linear functions of the coordinates that fit each array of samples best on the subset."""
+        chosen = np.array([x[self._CHOSEN] for x in arrays]).T
+        centres = exact_math.fold_sum(chosen, 0) / SUBSET
+        sums = exact_math.fold_sum(self._subset[:, None, :] * (chosen - centres)[:, :, None], 0).tolist()
+        fitted = []
+        for centre, right in zip(centres.tolist(), sums):
+            slopes = solved(self._factor, right)
+            for mean, slope in zip(self._means, slopes):
+                centre -= mean * slope
+            fitted.append((centre, slopes))
+        return fitted

@@ -42,3 +42,15 @@ class Key:
 
 
 NO_VALUE = Absent()
+
+def sampled_leaves(node):
+    """How many uncertain quantities a node without other axes rests on; a list counts as many."""
+    leaves, seen, queue = 0, set(), [node]
+    while queue:
+        node = queue.pop()
+        if node.index not in seen and SAMPLES in node.axes:
+            seen.add(node.index)
+            queue.extend(node.args)
+            if node.op in ("slot", "uniform"):
+                leaves += 1 if node.axes == {SAMPLES} else 2
+    return leaves
