@@ -3,7 +3,10 @@ from .layout import Layout
 from .phrase import compile_template
 from .reported import Reader
 
-_SEVERE = ("unacceptable", "conditional")
+# A note never decides; a mild finding is reported only where it decides.
+_NOTE, _SEVERE, _MILD = "note", "severe", "mild"
+_KIND = {"note": _NOTE, "unacceptable": _SEVERE, "conditional": _SEVERE, "acceptable": _MILD, "undetermined": _MILD}
+_KEPT = 1024
 _WORDS = ("danger", "warning", "caution", "notice")     # ANSI Z535.4: most severe first
 
 
@@ -15,15 +18,17 @@ class AnswerWriter:
         self.model, self.units, self.texts = model, bundle["units"], bundle["texts"]
         self._identity = {"version": rule_set.version, "digest": rule_set.digest}
         self._cautions = bundle["cautions"]
+        self._kinds = [_KIND[f["verdict"]] for f in model.findings]
+        self._listed = {}       # cautions and assumptions already written out, by what they are made of
         self._templates = {}
         for number, finding in enumerate(model.findings):
             for language, text in finding["sentence"].items():
                 self._templates[number, language] = compile_template(text)
 
     def write(self, intake, plan, results, intervals, beyond, input_digest, language):
-        """The answer document, a fresh dict."""
+        """The answer document. Its parts may be shared with other answers: to be read, not changed."""
         reader = Reader(self, intake, plan, results, intervals, language)
-        decided, holding = self._decide(plan.conditions, results)
+        decided, holding = self._decide(plan.live, results)
         verdict = self.model.findings[decided]["verdict"]
         findings = [self._finding(number, reader, language) for number in holding]
         weak = self._weak(plan, intake, decided) if verdict == "acceptable" else []
@@ -50,20 +55,17 @@ class AnswerWriter:
 
     # ---- findings ------------------------------------------------------------------------------------------------------------------
 
-    def _decide(self, conditions, results):
+    def _decide(self, live, results):
         """(number of the deciding finding, numbers of all reported findings, that one first)."""
         decided, holding = None, []
-        for number, finding in enumerate(self.model.findings):
-            holds = conditions[number]
-            if holds is False or (holds is not True and not results[holds]):
-                continue
-            note = finding["verdict"] == "note"
-            if decided is None and not note:
-                decided = number
-            elif not note and finding["verdict"] not in _SEVERE:
-                continue
-            holding.append(number)
-        return decided, [decided, *(number for number in holding if number != decided)]
+        for number, place in live:
+            if place is True or results[place]:
+                kind = self._kinds[number]
+                if kind is not _NOTE and decided is None:
+                    decided = number
+                elif kind is not _MILD:
+                    holding.append(number)
+        return decided, [decided, *holding]
 
     def _finding(self, number, reader, language):
         finding = self.model.findings[number]
@@ -101,24 +103,31 @@ class AnswerWriter:
     # ---- what was assumed, what to mind ------------------------------------------------------------------------------------------------
 
     def _assumptions(self, plan, results, intake, language):
-        listed = []
-        for place in intake.assumed:
-            index, item = place if isinstance(place, tuple) else (place, None)
-            slot = self.model.slots[index]
-            assume = slot.field["assume"]
-            pointer = slot.pointer if item is None else slot.pointer.replace("*", str(item), 1)
-            listed.append({"input": pointer, "value": assume["value"], "unit": slot.field.get("unit"), "because": assume["because"][language]})
-        for holds, assumption in zip(plan.assumptions, self.model.declared.get("assumptions", ())):
-            if holds is True or (holds is not False and results[holds]):
-                listed.append({"because": assumption["text"][language]})
-        return listed
+        held = tuple([n for n, holds in enumerate(plan.assumptions) if holds is True or (holds is not False and results[holds])])
+        key = ("assumptions", language, tuple(intake.assumed), held)
+        if key not in self._listed:
+            texts = self.model.declared.get("assumptions", ())
+            self._keep(key, [self._assumed(place, language) for place in intake.assumed] + [{"because": texts[n]["text"][language]} for n in held])
+        return self._listed[key]
+
+    def _assumed(self, place, language):
+        index, item = place if isinstance(place, tuple) else (place, None)
+        slot = self.model.slots[index]
+        assume = slot.field["assume"]
+        pointer = slot.pointer if item is None else slot.pointer.replace("*", str(item), 1)
+        return {"input": pointer, "value": assume["value"], "unit": slot.field.get("unit"), "because": assume["because"][language]}
 
     def _caution_list(self, plan, results, holding, language):
-        ids = []
-        for number in holding:
-            ids.extend(self.model.findings[number].get("cautions", ()))
-        for holds, caution in zip(plan.cautions, self.model.declared.get("cautions", ())):
-            if holds is True or (holds is not False and results[holds]):
-                ids.append(caution["caution"])
-        ordered = sorted(dict.fromkeys(ids), key=lambda i: _WORDS.index(self._cautions[i]["word"]))
-        return [{"id": i, "word": self._cautions[i]["word"], "text": self._cautions[i]["text"][language]} for i in ordered]
+        held = tuple([n for n, holds in enumerate(plan.cautions) if holds is True or (holds is not False and results[holds])])
+        key = ("cautions", language, tuple(holding), held)
+        if key not in self._listed:
+            standing = self.model.declared.get("cautions", ())
+            ids = [i for number in holding for i in self.model.findings[number].get("cautions", ())] + [standing[n]["caution"] for n in held]
+            ordered = sorted(dict.fromkeys(ids), key=lambda i: _WORDS.index(self._cautions[i]["word"]))
+            self._keep(key, [{"id": i, "word": self._cautions[i]["word"], "text": self._cautions[i]["text"][language]} for i in ordered])
+        return self._listed[key]
+
+    def _keep(self, key, made):
+        if len(self._listed) >= _KEPT:
+            self._listed.clear()
+        self._listed[key] = made

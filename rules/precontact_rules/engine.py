@@ -158,7 +158,7 @@ class RuleSet:
     def answer(self, check, body, language="en"):
         """Answer one check. `body` is the request's JSON object without its `rule_set` pin; `language` is en or es.
 
-        Returns JSON-ready data, numbers in the units their keys name. Raises KeyError for an unknown check and InputProblems for
+        Returns JSON-ready data to be read, not changed; numbers are in the units their keys name. Raises KeyError for an unknown check and InputProblems for
         a body that is not valid.
         """
         return self.question(check).answer(body, language)

@@ -51,6 +51,7 @@ class Plan:
         self._graph, self._wanted, self._places = graph, [], {}
         self._single, self._flat, self._deep = [], [], []     # places of samples reported with an interval: of one input, of several, with more axes
         self.conditions = [self._condition(f.get("when")) for f in model.findings]
+        self.live = [(number, place) for number, place in enumerate(self.conditions) if place is not False]
         self.cautions = [self._condition(c.get("when")) for c in model.declared.get("cautions", ())]
         self.assumptions = [self._condition(a.get("when")) for a in model.declared.get("assumptions", ())]
         self._condition_nodes = [graph.condition(f["when"]) if "when" in f else True for f in model.findings]
