@@ -32,9 +32,9 @@ def _rounded(value):
     """(decimal exponent of the first digit, the significant digits) of a value >= 0, rounded half up on its exact binary value."""
     if value == 0:
         return 0, "0"
-    shortest = repr(value)
-    if "e" in shortest or not shortest.rstrip("0").endswith("5"):
-        # Not a tie, which would end in 5 (and be written without an exponent): the C library's rounding of the exact value is the same.
+    shortest = repr(value).partition("e")[0].replace(".", "").strip("0")
+    if len(shortest) != DIGITS + 1 or shortest[-1] != "5":
+        # Not a tie, which has one digit more than is kept, a 5: there the C library's rounding of the exact value is the same.
         mantissa, _, power = f"{value:.{DIGITS - 1}e}".partition("e")
         return int(power), mantissa.replace(".", "").rstrip("0") or "0"
     exact = Decimal(value)

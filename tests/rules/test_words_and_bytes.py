@@ -1,5 +1,6 @@
 """Numbers in sentences, and canonical JSON against the reference implementation of RFC 8785."""
 import math
+from decimal import ROUND_HALF_UP, Context, Decimal
 
 import pytest
 import rfc8785
@@ -7,7 +8,7 @@ from hypothesis import given
 from hypothesis import strategies as st
 from precontact_rules.authoring.units import bundled
 from precontact_rules.canonical import canonical_bytes, digest
-from precontact_rules.phrase import joined, number_text
+from precontact_rules.phrase import _rounded, joined, number_text
 
 UNITS = bundled()
 
@@ -21,10 +22,18 @@ def test_numbers_as_a_person_reads_them(value, unit, language, text):
     assert number_text(value, unit, UNITS, language).replace("\u00a0", " ") == text
 
 
-def test_ties_round_half_up_on_the_exact_value():
-    # 1.00025 is a binary fraction away from the tie, 1.03125 = 1 + 1/32 is a tie at five digits only: four digits of 1000.5 are a true tie
-    assert number_text(1000.5, "ratio", UNITS, "en") == "1001"
-    assert number_text(1002.5, "ratio", UNITS, "en") == "1003"
+# Exactly representable values half-way between two four-digit numbers, with and without a fraction, and written with an exponent by Python.
+@pytest.mark.parametrize("value, text", [(1000.5, "1001"), (1002.5, "1003"), (10005.0, "10010"), (100050.0, "100100"), (0.0078125, "0.007813"),
+                                         (1.0005e16, "1.001e16"), (10015.0, "10020"), (-10005.0, "-10010")])
+def test_ties_round_half_up_on_the_exact_value(value, text):
+    assert number_text(value, "ratio", UNITS, "en") == text
+
+
+@given(st.floats(allow_nan=False, allow_infinity=False).map(abs).filter(lambda x: x > 1e-300) | st.integers(1, 10 ** 9).map(float))
+def test_the_quick_rounding_is_the_exact_one(value):
+    exact = Decimal(value)
+    rounded = exact.quantize(Decimal(1).scaleb(exact.adjusted() - 3), rounding=ROUND_HALF_UP, context=Context(prec=400, Emin=-999999, Emax=999999))
+    assert _rounded(value) == (rounded.adjusted(), "".join(map(str, rounded.as_tuple().digits)).rstrip("0"))
 
 
 @given(st.floats(allow_nan=False, allow_infinity=False).filter(lambda x: x == 0 or 1e-11 < abs(x) < 1e12))
