@@ -38,19 +38,18 @@ NO_ENDS = (NAN, NAN)
 
 def even_ends(x):
     """(low, high) of a result that rests on one uncertain input alone: on its own the points are even, so plain ends are exact."""
-    ordered = np.sort(x)
+    ordered = np.sort(x)                                     # sorts NaN to the end
     return _plain_ends(ordered) if ordered[-1] - ordered[0] < math.inf else NO_ENDS
 
 
 def coverage_ends(arrays, drawn):
     """[(low, high), ...] of the probabilistically symmetric 95 % interval of each 1-d array of samples; NaN where a sample has no value."""
+    if len(drawn.forms) < 2:
+        return [even_ends(x) for x in arrays]
     found = [NO_ENDS] * len(arrays)
     ordered = [np.sort(x) for x in arrays]                   # sorts NaN to the end
     usable = [k for k, row in enumerate(ordered) if row[-1] - row[0] < math.inf]
-    if len(drawn.forms) < 2:                                 # with one uncertain input the points are already even
-        for k in usable:
-            found[k] = _plain_ends(ordered[k])
-    elif usable:
+    if usable:
         ends = _smooth_ends([ordered[k] for k in usable])
         lines = [_Line(origin, slopes, drawn) for origin, slopes in drawn.slopes([arrays[k] for k in usable])]
         _correct(ends, [(i, line) for i, line in enumerate(lines) if line.usable], drawn)

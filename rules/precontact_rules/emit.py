@@ -4,6 +4,8 @@ Every node that depends on samples has two lanes: "a", the plain formula at the 
 point set.  Nodes without samples have lane "a" only.  The function is written twice: with Python's own operators, which raise where IEEE 754
 has no finite answer, and with functions that follow IEEE 754; the second runs only when the first has raised.
 """
+import math
+
 import numpy as np
 
 from . import exact_math, kernels
@@ -31,14 +33,20 @@ _REDUCE = {"any": "{0}.any(axis={1})", "all": "{0}.all(axis={1})", "count": "{0}
 _SIDED = ("lt", "le", "gt", "ge")      # comparisons whose probability can be corrected by the difference of their sides
 
 _GLOBALS = {
-    "root": __import__("math").sqrt, "div": exact_math.div, "sqrt": exact_math.sqrt, "floor": exact_math.floor, "nan": exact_math.NAN,
+    "root": math.sqrt, "div": exact_math.div, "sqrt": exact_math.sqrt, "floor": exact_math.floor, "nan": exact_math.NAN,
     "exp": exact_math.exp, "ln": exact_math.ln, "sin": exact_math.sin, "cos": exact_math.cos,
     "exp_array": exact_math.exp_array, "ln_array": exact_math.ln_array, "sin_array": exact_math.sin_array, "cos_array": exact_math.cos_array,
-    "fold_sum": exact_math.fold_sum, "ends_of": ends_of, "even_ends": even_ends, "share": share, "plain_share": plain_share, "where": np.where, "fmin": np.fmin, "fmax": np.fmax, "arange": np.arange,
+    "fold_sum": exact_math.fold_sum, "ends_of": ends_of, "even_ends": even_ends, "share": share, "plain_share": plain_share,
+    "where": np.where, "fmin": np.fmin, "fmax": np.fmax, "arange": np.arange,
     "at_least": kernels.at_least, "at_greatest": kernels.at_greatest,
     "ranking": kernels.ranking, "quantile": kernels.quantile, "share_place": kernels.share_place, "at_place": kernels.at_place,
     "spread_onto": kernels.spread_onto, "spread_along": kernels.spread_along, "POINTS": float(POINTS),
 }
+
+
+def _is_corrected(condition):
+    """Whether the difference of the sides of a comparison can correct its probability: on one uncertain input alone the points are even."""
+    return condition.op in _SIDED and sampled_leaves(condition) != 1
 
 
 class _Line:
@@ -95,7 +103,7 @@ class Emitter:
     @staticmethod
     def _inputs(node):
         """The nodes this one's code reads. A corrected share reads the sides of its comparison, and sees by itself where they have no value."""
-        if node.op == "share" and node.args[0].op in _SIDED and sampled_leaves(node.args[0]) != 1:
+        if node.op == "share" and _is_corrected(node.args[0]):
             return (node.args[0], *node.args[0].args)
         return node.args
 
@@ -212,7 +220,7 @@ class Emitter:
     def _op_share(self, name, node, lane):
         condition = node.args[0]
         argument, axes = self._name(condition, "s"), self._axes(condition, "s")
-        if condition.op in _SIDED and sampled_leaves(condition) != 1:      # on one uncertain input alone the points are even
+        if _is_corrected(condition):
             sides = self._operands(condition, "s", axes)
             args = [argument, *self._arg_names(condition, "s")]
             self.lines.append(_Line(name, args, f"share({argument}, {sides[0]} - {sides[1]}, {condition.op in ('gt', 'ge')}, d)"))

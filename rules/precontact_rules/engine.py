@@ -77,7 +77,7 @@ class Question:
     def _sample(self, intake, plan):
         """Best estimates, sampled arrays, forms of the dimensions used, slots beyond their range; dimensions are handed out in slot order, then in item order."""
         values, sampled, forms, beyond = list(intake.values), [None] * len(intake.values), [], []
-        for index in sorted(plan.spreads + plan.lists) if plan.lists else plan.spreads:
+        for index in plan.sampled:
             if type(values[index]) is list:
                 self._sample_list(index, values, sampled, forms, beyond)
                 continue
@@ -138,8 +138,6 @@ class RuleSet:
         self.version = self.data["version"]
         self.points = PointSet(self.data["tables"]["lattice"]["data"]["component"])
         self._questions = {}
-
-    from_bytes = classmethod(lambda cls, content: cls(content))
 
     @property
     def check_names(self):

@@ -2,6 +2,11 @@
 import math
 
 
+def no_value(formula, texts, language):
+    """Why a formula that could have a number has none."""
+    return formula["absent_because"][language] if "absent_because" in formula else texts["no-value"][language]
+
+
 class Layout:
     """Per plan and language: which results and steps of working are reported, and everything about them that no number changes."""
 
@@ -42,7 +47,7 @@ class Layout:
         place = f"r[{output.place}]"
         if output.formula["type"] == "boolean":
             return f"{{'value': {place}}}"
-        nothing = self._named({"value": None, "reason": self._no_value(output.formula)})
+        nothing = self._named({"value": None, "reason": no_value(output.formula, self.texts, self.language)})
         return f"({{'value': {self._scaled(place, output)}}} if least < {place} < most else {nothing})"
 
     def _plain(self, output):
@@ -56,9 +61,6 @@ class Layout:
     @staticmethod
     def _scaled(place, output):
         return f"{place} + 0.0" if output.factor == 1 else f"{place} / {output.factor!r} + 0.0"      # + 0.0 turns a negative zero into zero
-
-    def _no_value(self, formula):
-        return formula["absent_because"][self.language] if "absent_because" in formula else self.texts["no-value"][self.language]
 
     def _fixed(self, output, applicable):
         """(whether the result belongs to this branch, its finished form or None)."""

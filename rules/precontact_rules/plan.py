@@ -41,7 +41,7 @@ class Output:
 
 
 class Plan:
-    """Run with `run(values, sampled, uniforms, drawn, sizes)`; read through `conditions`, `outputs`, `extra_conditions`."""
+    """Run with `run(values, sampled, uniforms, drawn, sizes)`; read through `live` (findings that can hold), `cautions`, `assumptions` and `outputs`."""
 
     def __init__(self, model, states, filled):
         self.model, self.states, self.layouts = model, states, {}
@@ -50,19 +50,22 @@ class Plan:
             graph.formula(formula["name"])
         self._graph, self._wanted, self._places = graph, [], {}
         self._single, self._flat, self._deep = [], [], []     # places of samples reported with an interval: of one input, of several, with more axes
-        self.conditions = [self._condition(f.get("when")) for f in model.findings]
-        self.live = [(number, place) for number, place in enumerate(self.conditions) if place is not False]
+        self._holding = [graph.condition(f["when"]) if "when" in f else True for f in model.findings]
+        self.live = [(number, self._place_of(value)) for number, value in enumerate(self._holding) if value is not False]
         self.cautions = [self._condition(c.get("when")) for c in model.declared.get("cautions", ())]
         self.assumptions = [self._condition(a.get("when")) for a in model.declared.get("assumptions", ())]
-        self._condition_nodes = [graph.condition(f["when"]) if "when" in f else True for f in model.findings]
         self.outputs = {f["name"]: self._output(f) for f in model.formulas}
         emitter = Emitter(graph)
         self._fast, self._safe, self._counts = emitter.compile(self._wanted)
         self.uniform_count = len(emitter.uniforms)     # those that something reported rests on
         self._basis = {}
-        self.spreads = [i for i, state in enumerate(states) if state == "u" and model.slots[i].kind == "number"]
-        self.lists = [i for i, state in enumerate(states) if model.slots[i].axis and state in ("L", "U", "N", "V")]
+        self.sampled = [i for i, state in enumerate(states) if self._is_sampled(model.slots[i], state)]
         self.exact = not emitter.arrays     # floats only: nothing to sample, no numpy call
+
+    @staticmethod
+    def _is_sampled(slot, state):
+        """Whether samples or an array are made from this slot: an uncertain number, or the column of a list."""
+        return state in ("L", "U", "N", "V") if slot.axis else slot.kind == "number" and state == "u"
 
     # ---- what is wanted ----------------------------------------------------------------------------------------------------------------
 
@@ -75,8 +78,10 @@ class Plan:
 
     def _condition(self, tree):
         """True, False, or a place in the result."""
-        value = True if tree is None else self._graph.condition(tree)
-        return value if isinstance(value, bool) else self._want(value)
+        return self._place_of(True if tree is None else self._graph.condition(tree))
+
+    def _place_of(self, condition):
+        return condition if isinstance(condition, bool) else self._want(condition)
 
     def _output(self, formula):
         output, value = Output(formula, self.model.bundle["units"]), self._graph.values[formula["name"]]
@@ -129,7 +134,7 @@ class Plan:
         """({name: record} of the unverified numbers of the bundle, slots) on which the conditions of findings 0..decided rest."""
         if decided not in self._basis:
             leaves, seen = set(), set()
-            queue = [n for n in self._condition_nodes[:decided + 1] if isinstance(n, Node)]
+            queue = [n for n in self._holding[:decided + 1] if isinstance(n, Node)]
             while queue:
                 node = queue.pop()
                 if node.index not in seen:

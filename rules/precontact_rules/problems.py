@@ -1,4 +1,5 @@
 """What is wrong with a request, item by item."""
+import json
 from typing import NamedTuple
 
 
@@ -20,7 +21,6 @@ class InputProblems(Exception):
 
 def shown(value, longest=60):
     """A value as it is quoted in a message: JSON, shortened."""
-    import json
     try:
         text = json.dumps(value, ensure_ascii=False)
     except (TypeError, ValueError, RecursionError):

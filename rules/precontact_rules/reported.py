@@ -3,6 +3,7 @@ import math
 
 import numpy as np
 
+from .layout import no_value
 from .phrase import fill, number_text
 
 _LEAST, _MOST = -math.inf, math.inf      # a number strictly between them is finite; NaN is between nothing
@@ -21,8 +22,6 @@ class Reader:
     def result(self, output):
         """The public form of a result whose value the numbers decide."""
         value = self.results[output.place]
-        if type(value) is not float and not output.axes and isinstance(value, (np.generic, np.ndarray)):
-            value = value.item()               # a look-up at one point ran among sampled ones
         if output.samples is None and not output.axes:
             return self._one(value, None, None, output)
         low, high = (None, None) if output.samples is None else self.intervals[output.samples]
@@ -45,7 +44,7 @@ class Reader:
         if value is True or value is False:
             return {"value": value}
         if not _LEAST < value < _MOST:
-            return {"value": None, "reason": self._no_value(output.formula)}
+            return {"value": None, "reason": no_value(output.formula, self.texts, self.language)}
         if output.names:
             return self._named(output.names, int(value))
         if low is None:
@@ -64,12 +63,14 @@ class Reader:
         return (value if factor == 1 else value / factor) + 0.0    # + 0.0 turns a negative zero into zero
 
     def _named(self, axis, place):
-        size = self.intake.sizes.get(axis, 0) if self.model.axis_from(axis) == "list" else self.model.axis_size(axis)
-        if not 0 <= place < size:
+        if not 0 <= place < self._size(axis):
             return {"value": None, "reason": self.texts["no-value"][self.language]}
         if self.model.axis_from(axis) == "entries":
             return {"value": self.model.entry_ids(axis)[place], "title": self.name_at(axis, place)}
         return {"value": place, "title": self.name_at(axis, place)}
+
+    def _size(self, axis):
+        return self.intake.sizes.get(axis, 0) if self.model.axis_from(axis) == "list" else self.model.axis_size(axis)
 
     def name_at(self, axis, place):
         """What a person calls the item or entry at a place of an axis."""
@@ -82,9 +83,6 @@ class Reader:
             if path.startswith(axis + ".") and titles[place]:
                 return titles[place][self.language]
         return self.texts["item-number"][self.language].replace("{number}", str(place + 1))
-
-    def _no_value(self, formula):
-        return formula["absent_because"][self.language] if "absent_because" in formula else self.texts["no-value"][self.language]
 
     # ---- working -------------------------------------------------------------------------------------------------------------------
 
@@ -161,7 +159,7 @@ class Reader:
         output = self.plan.outputs[condition]
         if output.absent is not None or output.fixed is False:
             return []
-        size = self.intake.sizes.get(axis, 0) if self.model.axis_from(axis) == "list" else self.model.axis_size(axis)
+        size = self._size(axis)
         holds = [True] * size if output.fixed is True else np.asarray(self.results[output.place]).tolist()
         if isinstance(holds, bool):
             holds = [holds] * size

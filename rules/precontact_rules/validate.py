@@ -109,6 +109,15 @@ def _required(field, run, pointer):
         run.problems.append(Problem(pointer, "missing", f"nothing is given; needed: {_asked(field)}"))
 
 
+def _offered(field, run, x, pointer):
+    """What is given to a field that may be required: x, or None where it is absent or does not apply."""
+    if not _applies(field, run, x is not None, pointer):
+        return None
+    if x is None:
+        _required(field, run, pointer)
+    return x
+
+
 def _asked(field):
     meaning = field["meaning"]["en"]
     return f"{meaning}, in {field['unit'].replace('_', ' ')}" if field["kind"] == "number" else meaning
@@ -163,17 +172,9 @@ class _Group:
 
     def take(self, x, run, pointer):
         pointer = f"{pointer}/{self.key}"
-        before = len(run.problems)
-        if not _applies(self.field, run, x is not None, pointer):
+        applies, before, missing = _applies(self.field, run, x is not None, pointer), len(run.problems), x is None
+        if missing or not applies:
             x = {}
-        elif x is None:
-            x = {}
-            missing = self.field.get("required")
-            for step in self.steps:
-                _take(step, None, run, pointer)
-            if missing and len(run.problems) == before:
-                _required(self.field, run, pointer)
-            return
         elif type(x) is not dict:
             run.problems.append(Problem(pointer, "wrong-type", f"{shown(x)} is not an object; its members are {', '.join(sorted(self.keys))}"))
             x = {}
@@ -181,6 +182,8 @@ class _Group:
             _take(step, x.get(step.key), run, pointer)
         if not x.keys() <= self.keys:
             _unknown(x, self.keys, run.problems, pointer)
+        if missing and applies and len(run.problems) == before:      # its fields have not said so already
+            _required(self.field, run, pointer)
 
 
 class _Catalogue:
@@ -241,10 +244,7 @@ class _Reference:
 
     def take(self, x, run, pointer):
         pointer = f"{pointer}/{self.key}"
-        if not _applies(self.field, run, x is not None, pointer):
-            x = None
-        elif x is None:
-            _required(self.field, run, pointer)
+        x = _offered(self.field, run, x, pointer)
         overrides, entry = None, {}
         if x is not None:
             overrides, entry, run.titles[self.path] = self.catalogue.resolve(x, run, pointer)
@@ -267,10 +267,7 @@ class _List:
 
     def take(self, x, run, pointer):
         pointer = f"{pointer}/{self.key}"
-        if not _applies(self.field, run, x is not None, pointer):
-            x = None
-        elif x is None:
-            _required(self.field, run, pointer)
+        x = _offered(self.field, run, x, pointer)
         items = self._items(x, run, pointer)
         run.sizes[self.field["item"]] = len(items)
         for column in self.columns:

@@ -43,6 +43,7 @@ class Key:
 
 NO_VALUE = Absent()
 
+
 def sampled_leaves(node):
     """How many uncertain quantities a node without other axes rests on; a list counts as many."""
     leaves, seen, queue = 0, set(), [node]

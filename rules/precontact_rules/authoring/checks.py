@@ -226,7 +226,6 @@ class CheckBuilder:
                 if name not in used:
                     self.source.fault(m.file, m.at(name), f"the constant {name} is not used", "drop it")
         for m in self._all("inputs"):
-            for path in self.scope.inputs:
-                if path.split(".")[0] in m and path not in used and path not in [f"{r}.{k}" for r in self.scope.references for k in ()] \
-                        and not any(path.startswith(r + ".") for r in self.scope.references) and "." not in path:
-                    self.source.fault(m.file, m.at(path), f"the input {path} is not used", "use it or drop it")
+            for name in m:
+                if name in self.scope.inputs and name not in used:
+                    self.source.fault(m.file, m.at(name), f"the input {name} is not used", "use it or drop it")
