@@ -20,3 +20,17 @@ def rule_set(request):
     bundle, faults, _ = build(request.config.getoption("--rule-source"))
     assert not faults, "\n".join(map(str, sorted(faults)))
     return RuleSet(canonical(bundle))
+
+
+@pytest.fixture(scope="session")
+def app():
+    """The application as it is deployed, without its log."""
+    from precontact_service import create_app        # only where asked for: the rules' tests need no service
+
+    return create_app(access_log=False)
+
+
+@pytest.fixture
+def client(app):
+    """A client of the whole stack, from the outermost layer inwards."""
+    return app.test_client()

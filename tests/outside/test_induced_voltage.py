@@ -37,30 +37,44 @@ def explanations(rule_set, system, frequency):
         yield id_, field["weight"], field["voltage_centre"] * scale, deviation, field["voltage_least"] * scale, field["voltage_most"] * scale, low, high, field["reactive"]
 
 
-def reference(rule_set, system, frequency, readings):
-    """Posterior probabilities by id, and the least misfit; the integral over the voltage is exact, over the impedance a dense midpoint rule."""
-    omega, logs, misfit = 2 * np.pi * frequency, {}, []
+def parts(rule_set, system, frequency, readings, nodes=NODES):
+    """For every explanation: (id, complex impedance at the nodes, mean, deviation and logarithm of weight of the voltage there, its range, misfit).
+
+    The integral over the voltage is exact, a Gaussian cut by the prior's range; the impedance runs over a dense midpoint rule.
+    """
+    omega = 2 * np.pi * frequency
     for id_, weight, mean, deviation, least, most, low, high, reactive in explanations(rule_set, system, frequency):
-        size = np.exp(np.log(low) + (np.log(high) - np.log(low)) * (np.arange(NODES) + 0.5) / NODES)
+        size = np.exp(np.log(low) + (np.log(high) - np.log(low)) * (np.arange(nodes) + 0.5) / nodes)
         source = -1j * size if reactive else size + 0j
         precision = 0.0 if np.isinf(deviation) else deviation ** -2
-        total, moment, square = np.full(NODES, precision), np.full(NODES, precision * mean), np.full(NODES, precision * mean ** 2)
+        total, moment, square = np.full(nodes, precision), np.full(nodes, precision * mean), np.full(nodes, precision * mean ** 2)
         for value, resistance in readings:
-            u = np.sqrt((0.01 * value + 3 * 0.01) ** 2 / 3 + (0.03 * value) ** 2 + 0.05 ** 2)
+            u = uncertainty(value)
             share = 1 / np.abs(1 + source * (1 / resistance + 1j * omega * 1e-10))
             total, moment, square = total + (share / u) ** 2, moment + share * value / u ** 2, square + (value / u) ** 2
         centre, spread = moment / total, total ** -0.5
         a, b = (least - centre) / spread, (most - centre) / spread
-        a, b = np.where(a > 0, -b, a), np.where(a > 0, -a, b)           # the tail with the digits
-        inside = log_ndtr(b) + np.log1p(-np.exp(np.minimum(log_ndtr(a) - log_ndtr(b), -1e-300)))
+        lower, upper = np.where(a > 0, -b, a), np.where(a > 0, -a, b)           # the tail with the digits
+        inside = log_ndtr(upper) + np.log1p(-np.exp(np.minimum(log_ndtr(lower) - log_ndtr(upper), -1e-300)))
         height = 1 / (most - least) if np.isinf(deviation) else 1 / (deviation * np.sqrt(2 * np.pi) * (norm.cdf(most, mean, deviation) - norm.cdf(least, mean, deviation)))
         chi = square - moment ** 2 / total
-        misfit.append(np.min(chi))
-        logs[id_] = np.log(weight * height) - 0.5 * chi + np.log(spread * np.sqrt(2 * np.pi)) + inside
-    top = max(v.max() for v in logs.values())
-    mass = {id_: np.exp(v - top).mean() for id_, v in logs.items()}
+        yield id_, source, centre, spread, np.log(weight * height) - 0.5 * chi + np.log(spread * np.sqrt(2 * np.pi)) + inside, (a, b), np.min(chi)
+
+
+def uncertainty(value):
+    """Standard uncertainty of a reading with the instrument of `described`."""
+    return np.sqrt((0.01 * value + 3 * 0.01) ** 2 / 3 + (0.03 * value) ** 2 + 0.05 ** 2)
+
+
+def reference(rule_set, system, frequency, readings, nodes=NODES):
+    """Posterior probabilities by id, the least misfit, and the evidence of all explanations together."""
+    found = list(parts(rule_set, system, frequency, readings, nodes))
+    mass = {id_: np.exp(logs).mean() for id_, _, _, _, logs, _, _ in found}
     whole = sum(mass.values())
-    return {id_: m / whole for id_, m in mass.items()}, min(misfit)
+    if whole == 0:       # every weight is too small for a float: weigh relative to the greatest
+        top = max(logs.max() for _, _, _, _, logs, _, _ in found)
+        mass = {id_: np.exp(logs - top).mean() for id_, _, _, _, logs, _, _ in found}
+    return {id_: m / sum(mass.values()) for id_, m in mass.items()}, min(part[-1] for part in found), whole
 
 
 def situations(count):
@@ -87,7 +101,7 @@ def asked(system, frequency, readings, **more):
 @pytest.mark.parametrize("situation", list(situations(45)), ids=lambda s: f"{s[0]:.0f}V-{len(s[2])}")
 def test_probabilities_agree_with_the_dense_reference(rule_set, situation):
     system, frequency, readings = situation
-    expected, misfit = reference(rule_set, system, frequency, readings)
+    expected, _, _ = reference(rule_set, system, frequency, readings)
     found = rule_set.answer("induced-voltage", asked(system, frequency, readings))["results"]
     for item in found["explanation_probability_ratio"]:
         assert item["value"] == pytest.approx(expected[item["id"]], abs=0.005), item["id"]        # the required accuracy
@@ -99,25 +113,14 @@ def test_probabilities_agree_with_the_dense_reference(rule_set, situation):
 def test_intervals_agree_with_draws_from_the_reference(rule_set, situation):
     """Source impedance and body current: the shares of a weighted million draws below the reported ends are 2.5, 50 and 97.5 %."""
     system, frequency, readings = situation
-    random, omega = np.random.default_rng(7), 2 * np.pi * frequency
+    random = np.random.default_rng(7)
     sizes, currents, weights = [], [], []
-    for _, weight, mean, deviation, least, most, low, high, reactive in explanations(rule_set, system, frequency):
-        size = np.exp(np.log(low) + (np.log(high) - np.log(low)) * (np.arange(4000) + 0.5) / 4000)[:, None]
-        source = -1j * size if reactive else size + 0j
-        precision = 0.0 if np.isinf(deviation) else deviation ** -2
-        total, moment, square = precision, precision * mean, precision * mean ** 2
-        for value, resistance in readings:
-            u = np.sqrt((0.01 * value + 3 * 0.01) ** 2 / 3 + (0.03 * value) ** 2 + 0.05 ** 2)
-            share = 1 / np.abs(1 + source * (1 / resistance + 1j * omega * 1e-10))
-            total, moment, square = total + (share / u) ** 2, moment + share * value / u ** 2, square + (value / u) ** 2
-        centre, spread = moment / total, total ** -0.5
-        a, b = norm.cdf((least - centre) / spread), norm.cdf((most - centre) / spread)
-        draws = centre + spread * norm.ppf(np.clip(a + (b - a) * random.random((4000, 40)), 1e-300, 1 - 1e-16))
-        height = 1 / (most - least) if np.isinf(deviation) else 1 / (deviation * np.sqrt(2 * np.pi) * (norm.cdf(most, mean, deviation) - norm.cdf(least, mean, deviation)))
-        mass = np.log(weight * height) - 0.5 * (square - moment ** 2 / total) + np.log(spread * np.sqrt(2 * np.pi) * np.maximum(b - a, 1e-300))
-        sizes.append(np.broadcast_to(size, draws.shape))
-        currents.append(np.abs(draws) / np.abs(source + 1000))
-        weights.append(np.broadcast_to(mass, draws.shape))
+    for _, source, centre, spread, logs, (a, b), _ in parts(rule_set, system, frequency, readings, 4000):
+        low, high = norm.cdf(a)[:, None], norm.cdf(b)[:, None]
+        draws = centre[:, None] + spread[:, None] * norm.ppf(np.clip(low + (high - low) * random.random((4000, 40)), 1e-300, 1 - 1e-16))
+        sizes.append(np.broadcast_to(np.abs(source)[:, None], draws.shape))
+        currents.append(np.abs(draws) / np.abs(source[:, None] + 1000))
+        weights.append(np.broadcast_to(logs[:, None], draws.shape))
     logs = np.array(weights)
     share_of = np.exp(logs - logs.max())
     share_of /= share_of.sum()
@@ -134,48 +137,18 @@ def test_expected_information_against_simulated_readings(rule_set, situation):
     """The doubt that a next reading removes, against the same found by drawing the reading and weighing again with the reference."""
     system, frequency, readings = situation
     found = rule_set.answer("induced-voltage", asked(system, frequency, readings, kit=[{"instrument": described(3e3)}]))["results"]
-    expected, misfit = reference(rule_set, system, frequency, readings)
+    expected, misfit, before = reference(rule_set, system, frequency, readings)
     if misfit > 9:
         return
     low, high = found["predicted_reading_low_volt"][0]["value"], found["predicted_reading_high_volt"][0]["value"]
     assert 0 <= low <= found["predicted_reading_volt"][0]["value"] <= high
     entropy = lambda p: -sum(x * np.log2(x) for x in p.values() if x > 0)        # noqa: E731
     grid = np.linspace(0, high * 1.3 + 1, 160)
-    density, after = [], []
-    for value in grid:
-        posterior, _ = reference_with_evidence(rule_set, system, frequency, [*readings, (float(value), 3e3)])
-        density.append(posterior[1])
-        after.append(entropy(posterior[0]))
-    density = np.array(density) / reference_with_evidence(rule_set, system, frequency, readings)[0][1]
-    u = np.sqrt((0.01 * grid + 0.03) ** 2 / 3 + (0.03 * grid) ** 2 + 0.05 ** 2)
-    density = density / (u * np.sqrt(2 * np.pi))
-    gain = entropy(expected) - np.sum(np.array(after) * density) / np.sum(density)
+    next_time = [reference(rule_set, system, frequency, [*readings, (float(value), 3e3)], 1500) for value in grid]
+    density = np.array([evidence for _, _, evidence in next_time]) / before / (uncertainty(grid) * np.sqrt(2 * np.pi))
+    gain = entropy(expected) - np.sum(np.array([entropy(p) for p, _, _ in next_time]) * density) / np.sum(density)
     # bins stand in for the reading's noise: what they tell apart agrees within a tenth of a bit or a quarter of the gain
     assert found["information_gain_bit"][0]["value"] == pytest.approx(max(gain, 0), abs=max(0.1, 0.25 * abs(gain)))
-
-
-def reference_with_evidence(rule_set, system, frequency, readings):
-    """((probabilities, evidence relative to the densities' own heights), None)."""
-    logs = {}
-    omega = 2 * np.pi * frequency
-    for id_, weight, mean, deviation, least, most, low, high, reactive in explanations(rule_set, system, frequency):
-        size = np.exp(np.log(low) + (np.log(high) - np.log(low)) * (np.arange(1500) + 0.5) / 1500)
-        source = -1j * size if reactive else size + 0j
-        precision = 0.0 if np.isinf(deviation) else deviation ** -2
-        total, moment, square = np.full(1500, precision), np.full(1500, precision * mean), np.full(1500, precision * mean ** 2)
-        for value, resistance in readings:
-            u = np.sqrt((0.01 * value + 3 * 0.01) ** 2 / 3 + (0.03 * value) ** 2 + 0.05 ** 2)
-            share = 1 / np.abs(1 + source * (1 / resistance + 1j * omega * 1e-10))
-            total, moment, square = total + (share / u) ** 2, moment + share * value / u ** 2, square + (value / u) ** 2
-        centre, spread = moment / total, total ** -0.5
-        a, b = (least - centre) / spread, (most - centre) / spread
-        a, b = np.where(a > 0, -b, a), np.where(a > 0, -a, b)
-        inside = log_ndtr(b) + np.log1p(-np.exp(np.minimum(log_ndtr(a) - log_ndtr(b), -1e-300)))
-        height = 1 / (most - least) if np.isinf(deviation) else 1 / (deviation * np.sqrt(2 * np.pi) * (norm.cdf(most, mean, deviation) - norm.cdf(least, mean, deviation)))
-        logs[id_] = np.log(weight * height) - 0.5 * (square - moment ** 2 / total) + np.log(spread * np.sqrt(2 * np.pi)) + inside
-    mass = {id_: np.exp(v).mean() for id_, v in logs.items()}
-    whole = sum(mass.values())
-    return ({id_: m / whole for id_, m in mass.items()} if whole > 0 else {id_: 0.0 for id_ in mass}, whole), None
 
 
 @settings(max_examples=40, deadline=None)

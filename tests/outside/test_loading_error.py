@@ -11,9 +11,8 @@ from scipy.optimize import brentq
 from precontact_rules import InputProblems
 
 from .circuits import generate
+from .monte_carlo import DRAWS, draws
 from .ngspice import Netlist
-
-DRAWS = 1_000_000
 
 
 def value(answer, name):
@@ -143,18 +142,6 @@ def test_largest_sufficient_capacitance_is_the_root(rule_set):
 
 
 # ---- Monte Carlo ---------------------------------------------------------------------------------------------------------------------------
-
-def draws(rng, given_value):
-    """10^6 draws of an input as the request states it."""
-    if not isinstance(given_value, dict):
-        return given_value
-    if "between" in given_value:
-        return rng.uniform(*given_value["between"], DRAWS)
-    if "standard_uncertainty" in given_value:
-        return rng.normal(given_value["value"], given_value["standard_uncertainty"], DRAWS)
-    half = given_value.get("half_width", given_value["value"] * given_value.get("half_width_percent", 0) / 100)
-    return rng.uniform(given_value["value"] - half, given_value["value"] + half, DRAWS)
-
 
 def uncertain_cases():
     """Thevenin sources whose error lies about the limit, over the three kinds of spread, dc and ac."""

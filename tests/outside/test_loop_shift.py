@@ -12,8 +12,8 @@ from precontact_rules import InputProblems
 
 from .loop_bodies import any_body, milliammeter, two_wire, voltmeter
 from .loops import CONNECTIONS, SLOPE, TOP, simulate
+from .monte_carlo import DRAWS, draws
 
-DRAWS = 1_000_000
 CHECK = "loop-shift"
 
 
@@ -236,18 +236,6 @@ def test_a_safety_loop_may_never_be_opened(rule_set, loop):
 
 # ---- Monte Carlo ---------------------------------------------------------------------------------------------------------------------------
 
-def draws(rng, given_value):
-    """10^6 draws of an input as the request states it."""
-    if not isinstance(given_value, dict):
-        return np.full(DRAWS, float(given_value))
-    if "between" in given_value:
-        return rng.uniform(*given_value["between"], DRAWS)
-    if "standard_uncertainty" in given_value:
-        return rng.normal(given_value["value"], given_value["standard_uncertainty"], DRAWS)
-    half = given_value.get("half_width", given_value["value"] * given_value.get("half_width_percent", 0) / 100)
-    return rng.uniform(given_value["value"] - half, given_value["value"] + half, DRAWS)
-
-
 def uncertain_loops():
     """Two-wire loops with a burden in series or a voltmeter across the receiver or the transmitter, about their limits."""
     rng = np.random.default_rng(11)
@@ -285,7 +273,7 @@ def by_hand(body, current, volts, receiver, meter):
 def test_monte_carlo_agrees(rule_set, number, body):
     rng = np.random.default_rng(200 + number)
     meter = body["instrument"].get("input_resistance_ohm", body["instrument"].get("burden_resistance_ohm"))
-    sampled = [draws(rng, x) for x in (body["transmitter"]["output_current_ampere"], body["supply"]["voltage_volt"], body["receiver"]["resistance_ohm"], meter)]
+    sampled = [draws(rng, x) + np.zeros(DRAWS) for x in (body["transmitter"]["output_current_ampere"], body["supply"]["voltage_volt"], body["receiver"]["resistance_ohm"], meter)]
     before, after = by_hand(body, *sampled)
     shift = (after - before) / 0.016 * 100
     limit = float(np.quantile(np.abs(shift), 0.6)) or 1.0

@@ -7,21 +7,10 @@ import math
 
 import numpy as np
 
-DRAWS = 1_000_000
+from .monte_carlo import DRAWS, draws
+
 BANDS = {"class-a-ground-fault": (0.004, 0.006), "iec-general-a-10ma": (0.005, 0.010), "iec-general-a-30ma": (0.015, 0.030),
          "iec-general-a-100ma": (0.050, 0.100), "iec-selective-a-300ma": (0.150, 0.300), "special-purpose-ground-fault": (0.015, 0.020)}
-
-
-def draws(rng, given):
-    """10^6 draws of an input as the request states it."""
-    if not isinstance(given, dict):
-        return given
-    if "between" in given:
-        return rng.uniform(*given["between"], DRAWS)
-    if "standard_uncertainty" in given:
-        return rng.normal(given["value"], given["standard_uncertainty"], DRAWS)
-    half = given.get("half_width", given["value"] * given.get("half_width_percent", 0) / 100)
-    return rng.uniform(given["value"] - half, given["value"] + half, DRAWS)
 
 
 def spread(rng, value, form, share):

@@ -3,19 +3,6 @@ import copy
 
 import pytest
 from precontact_rules import released
-from precontact_service import create_app
-
-
-@pytest.fixture(scope="session")
-def app():
-    """The application as it is deployed, without its log."""
-    return create_app(access_log=False)
-
-
-@pytest.fixture
-def client(app):
-    """A client of the whole stack, from the outermost layer inwards."""
-    return app.test_client()
 
 
 @pytest.fixture(scope="session")
