@@ -7,7 +7,6 @@ A layer that protects the service (identity, rate limits) belongs outside this o
 from io import BytesIO
 
 from .intake import LIMIT
-from .questions import HEADERS
 
 
 class Express:
@@ -24,11 +23,11 @@ class Express:
             try:
                 if len(raw) != length:
                     raise EOFError
-                content, language = question.answer(environ, raw)
+                content, headers = question.answer(environ, raw)
             except Exception:  # noqa: BLE001  (the long way answers it, and logs it where it is our fault)
                 environ["wsgi.input"] = BytesIO(raw)
             else:
-                start_response("200 OK", [*HEADERS[language], ("Content-Length", str(len(content)))])
+                start_response("200 OK", [*headers, ("Content-Length", str(len(content)))])
                 return (content,)
         return self._application(environ, start_response)
 

@@ -8,7 +8,10 @@ import json
 import sys
 from pathlib import Path
 
+from precontact_rules.sealing import KeyRing
+
 from . import create_app
+from .seals import Seals
 
 
 def files(app):
@@ -43,7 +46,7 @@ def main(arguments=None):
     parser.add_argument("folder", type=Path)
     parser.add_argument("--check", action="store_true", help="write nothing")
     given = parser.parse_args(arguments)
-    texts = files(create_app(access_log=False))
+    texts = files(create_app(access_log=False, seals=Seals(KeyRing.example())))
     changed = differing(given.folder, texts)
     if given.check and changed:
         print("Not what the service is:", *changed, sep="\n  ")

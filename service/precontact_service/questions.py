@@ -5,13 +5,8 @@ from precontact_rules import Problem
 from .body import read_json
 from .door import EDITION
 from .editions import PIN
-from .language import LANGUAGES, chosen
+from .language import chosen
 from .problems import ProblemError
-
-HEADERS = {
-    language: [("Content-Type", "application/json"), ("Content-Language", language), ("Vary", "Accept-Language"), ("Cache-Control", "no-store")]
-    for language in LANGUAGES
-}
 
 
 class Question:
@@ -20,16 +15,17 @@ class Question:
     def __init__(self, editions, name):
         self._editions, self._name = editions, name
         self._ask_latest = editions.latest.rule_set.question(name).answer
+        self._latest_headers = editions.latest.answer_headers
 
     def answer(self, environ, raw):
-        """(content, language) of the answer to the body `raw`. Raises ProblemError and InputProblems."""
+        """(content, headers) of the answer to the body `raw`. Raises ProblemError and InputProblems."""
         body, language = read_json(raw), chosen(environ)
-        ask = self._ask_latest
+        ask, headers = self._ask_latest, self._latest_headers
         if type(body) is dict and PIN in body:
             edition = environ[EDITION] = self._editions.pinned(body.pop(PIN))
             self.require(edition, f"/{PIN}")
-            ask = edition.rule_set.question(self._name).answer
-        return orjson.dumps(ask(body, language)), language
+            ask, headers = edition.rule_set.question(self._name).answer, edition.answer_headers
+        return orjson.dumps(ask(body, language)), headers[language]
 
     def require(self, edition, pointer):
         """Raise ProblemError if the edition does not hold this check."""

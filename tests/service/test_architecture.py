@@ -9,6 +9,7 @@ ROOT = Path(__file__).resolve().parents[2]
 RULES, SERVICE = ROOT / "rules" / "precontact_rules", ROOT / "service" / "precontact_service"
 MODULES = sorted(path for folder in ("rules", "service", "tests", "deploy") for path in (ROOT / folder).rglob("*.py") if "node_modules" not in path.parts)
 SERVICE_MAY = {"precontact_rules", "flask", "flask_smorest", "marshmallow", "apispec", "werkzeug", "markupsafe", "orjson", "gunicorn"}
+SEALING_MAY = {"joserfc"}
 AUTHORING_MAY = {"numpy", "yaml", "pint", "rfc8785", "precontact_rules"}
 
 
@@ -31,7 +32,7 @@ def outside(path):
 def test_the_engine_needs_numpy_alone():
     for path in RULES.glob("*.py"):
         assert outside(path) <= {"numpy"}, path
-        assert not any(name.startswith(".authoring") for name in imported(path)), path
+        assert not any(name.startswith((".authoring", ".sealing")) for name in imported(path)), path
 
 
 def test_the_engine_knows_no_http():
@@ -42,6 +43,12 @@ def test_the_engine_knows_no_http():
 def test_authoring_needs_its_own_few():
     for path in (RULES / "authoring").glob("*.py"):
         assert outside(path) <= AUTHORING_MAY, path
+
+
+def test_sealing_needs_its_library_alone():
+    for path in (RULES / "sealing").glob("*.py"):
+        assert outside(path) <= SEALING_MAY, path
+        assert "authoring" not in set(imported(path)), path
 
 
 def test_the_service_imports_the_rules_and_not_their_authoring():

@@ -5,6 +5,7 @@ import sys
 import zipfile
 
 from precontact_rules import released
+from precontact_rules.sealing import field
 from serving import ROOT
 
 
@@ -23,5 +24,7 @@ def test_the_wheel_holds_releases_pages_and_both_packages(tmp_path):
         folder = ROOT / package
         sources = {str(path.relative_to(folder.parent)) for path in folder.rglob("*") if path.suffix in (".py", ".html", ".css")}
         assert sources <= names, sources - names
+    handheld = {f"precontact_rules/handheld/{path.relative_to(ROOT / 'rules' / 'handheld').as_posix()}" for path in field.page_files().values()}
+    assert handheld and handheld <= names, handheld - names
     script = next(name for name in names if name.endswith("entry_points.txt"))
     assert "precontact-rules" in zipfile.ZipFile(next(tmp_path.glob("*.whl"))).read(script).decode()

@@ -1,5 +1,5 @@
 """Documentation of the checks."""
-from .operations import ACCEPT_LANGUAGE, ETAG_HEADER, LANGUAGE_HEADER, RULE_SET_HEADER, documented, found, pin_parameter, problems, unchanged
+from .operations import ACCEPT_LANGUAGE, ETAG_HEADER, LANGUAGE_HEADER, RETIREMENT_HEADERS, RULE_SET_HEADER, documented, found, pin_parameter, problems, unchanged
 from .schemas import CheckDescription, CheckList
 
 _ETAG = {"ETag": ETAG_HEADER}
@@ -31,7 +31,7 @@ def description(made, view, editions, name):
 def question(made, view, editions, name):
     """POST /v1/checks/<name>."""
     check = editions.latest.rule_set.data["checks"][name]
-    answer = {"description": "The answer", "headers": {"Precontact-Rule-Set": RULE_SET_HEADER, "Content-Language": LANGUAGE_HEADER},
+    answer = {"description": "The answer", "headers": {"Precontact-Rule-Set": RULE_SET_HEADER, "Content-Language": LANGUAGE_HEADER, **RETIREMENT_HEADERS},
               "content": {"application/json": {"schema": component(name, "Answer")}}}
     return documented(
         made, view, operationId=f"ask{component(name, '')}", summary=f"{check['title']['en']}: {check['question']['en']}",

@@ -10,6 +10,11 @@ PROBLEM_WORDS = {400: "The body is not JSON with one meaning", 404: "Nothing at 
 
 RULE_SET_HEADER = {"description": "Version and digest of the rule set behind the response (RFC 9651)", "schema": {"type": "string"}}
 ETAG_HEADER = {"description": "Strong validator: the digest of the bytes", "schema": {"type": "string"}}
+RETIREMENT_HEADERS = {
+    "Deprecation": {"description": "From when on another rule set is advised (RFC 9745); absent where none is", "schema": {"type": "string", "examples": ["@1796083200"]}},
+    "Sunset": {"description": "From when on the rule set is not for new checks (RFC 8594); what it answered can be computed again for ever",
+               "schema": {"type": "string", "examples": ["Tue, 01 Jun 2027 00:00:00 GMT"]}},
+}
 LANGUAGE_HEADER = {"description": "Language of the words: en or es", "schema": {"type": "string"}}
 
 # What these hold is a preference: anything else than they describe is answered too.

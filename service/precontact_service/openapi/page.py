@@ -27,7 +27,7 @@ def _description(document, response):
 
 
 def _examples(path, method, operation):
-    answered = operation["responses"]["200"]["content"]["application/json"].get("examples", {})
+    answered = next(iter(operation["responses"]["200"]["content"].values())).get("examples", {})
     asked = operation.get("requestBody", {}).get("content", {}).get("application/json", {}).get("examples", {})
     shown = []
     for name, response in answered.items():

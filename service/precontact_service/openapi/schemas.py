@@ -53,7 +53,15 @@ class Identity(Open):
     digest = text("SHA-256 of the bundle's bytes", pattern="^sha-256:[0-9a-f]{64}$")
 
 
-class RuleSetRow(Identity):
+class Retirement(Identity):
+    """Whether a rule set is still for new checks. All null: it is."""
+
+    deprecated = fields.Date(required=True, allow_none=True, metadata={"description": "Date from which another rule set is advised"})
+    sunset = fields.Date(required=True, allow_none=True, metadata={"description": "Date from which it is not for new checks"})
+    because = fields.Dict(keys=fields.String(), values=fields.String(), required=True, allow_none=True, metadata={"description": "Reason by language"})
+
+
+class RuleSetRow(Retirement):
     """One row of the list of rule sets."""
 
     href = text("Address of the rule set", format="uri-reference")
@@ -73,8 +81,15 @@ class BundleLink(Open):
     bytes = number("Length of the bundle")
 
 
-class RuleSet(Identity):
-    """One released rule set. Immutable."""
+class SealLink(Open):
+    """Where a seal is, and the keys that it is made with."""
+
+    href = text("Address of the seal", format="uri-reference")
+    keys = text("Address of the key list", format="uri-reference")
+
+
+class RuleSet(Retirement):
+    """One released rule set. Its bytes never change."""
 
     language = number("Version of the rule language")
     title = fields.Dict(keys=fields.String(), values=fields.String(), required=True, metadata={"description": "Title by language"})
@@ -82,6 +97,47 @@ class RuleSet(Identity):
     catalogues = many(fields.String(), "Names of its catalogues")
     cases = number("Worked cases it carries, with their answers")
     bundle = fields.Nested(BundleLink, required=True)
+    seal = fields.Nested(SealLink, required=True)
+
+
+class Signature(Open):
+    """One signature, by one key."""
+
+    protected = text("Header in base64url: alg, b64, crit, kid, typ", pattern="^[A-Za-z0-9_-]+$")
+    signature = text("64 bytes in base64url", pattern="^[A-Za-z0-9_-]{86}$")
+
+
+class Seal(Open):
+    """A detached JWS in general JSON form."""
+
+    signatures = many(fields.Nested(Signature), "One for each valid key")
+
+
+class PublicKey(Open):
+    """A public key (RFC 7517, RFC 8037)."""
+
+    kty = text("Always `OKP`")
+    crv = text("Always `Ed25519`")
+    x = text("The key in base64url", pattern="^[A-Za-z0-9_-]{43}$")
+    kid = text("Its SHA-256 thumbprint (RFC 7638)", pattern="^[A-Za-z0-9_-]{43}$")
+    alg = text("Always `Ed25519` (RFC 9864)")
+    use = text("Always `sig`")
+
+
+class RevokedKey(Open):
+    """A key that never again vouches for anything."""
+
+    kid = text("Name of the key")
+    because = text("Reason")
+
+
+class KeyList(Open):
+    """Who may vouch for a rule set."""
+
+    serial = number("Rises with every change")
+    keys = many(fields.Nested(PublicKey), "The valid keys")
+    revoked = many(fields.Nested(RevokedKey), "The revoked keys")
+    development = fields.Boolean(required=True, metadata={"description": "True for a key that is gone with its server"})
 
 
 class CatalogueRow(Open):

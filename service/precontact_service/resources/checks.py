@@ -7,7 +7,6 @@ from ..editions import PIN
 from ..intake import read_body
 from ..openapi import checks as documented
 from ..parameters import edition_of_request
-from ..questions import HEADERS
 from ..reply import language_of_request, resource
 
 
@@ -43,7 +42,7 @@ def _description(editions, name, question):
 
 def _question(question):
     def ask():
-        content, language = question.answer(request.environ, read_body())
-        return Response(content, 200, HEADERS[language])
+        content, headers = question.answer(request.environ, read_body())
+        return Response(content, 200, headers)
 
     return ask

@@ -1,5 +1,4 @@
 """Pages for people: every operation with its examples, and what each kind of problem means. No script, nothing from elsewhere."""
-import hashlib
 import re
 from functools import lru_cache
 from pathlib import Path
@@ -12,7 +11,7 @@ from ..openapi import page
 from ..parameters import query
 from ..problem_types import TYPES
 from ..problems import ProblemError
-from ..reply import JSON, REVALIDATE, content_response
+from ..reply import JSON, content_response
 
 _HTML = "text/html; charset=utf-8"
 _STYLE = Path(__file__).parent.parent / "static" / "style.css"
@@ -39,37 +38,33 @@ def blueprint(document):
     @made.get("/v1/openapi.json")
     def openapi():
         query()
-        return _bytes(document_bytes(), JSON)
+        return content_response(document_bytes(), JSON)
 
     @made.get("/v1/examples/<string:name>.json")
     def example(name):
         query()
         if name not in document()[1]:
             raise ProblemError("not-found", f"The document has no example {name[:80]!r} of its own address.")
-        return _bytes(document()[1][name], JSON)
+        return content_response(document()[1][name], JSON)
 
     @made.get("/")
     def api_page():
         query()
-        return _bytes(page_bytes(), _HTML)
+        return content_response(page_bytes(), _HTML)
 
     @made.get("/problems/<string:code>")
     def problem_page(code):
         query()
         if code not in TYPES:
             raise ProblemError("not-found", f"No kind of problem is named {code[:80]!r}; there are {', '.join(TYPES)}.")
-        return _bytes(problem_bytes(code), _HTML)
+        return content_response(problem_bytes(code), _HTML)
 
     @made.get("/style.css")
     def style():
         query()
-        return _bytes(_STYLE.read_bytes(), "text/css; charset=utf-8")
+        return content_response(_STYLE.read_bytes(), "text/css; charset=utf-8")
 
     return made
-
-
-def _bytes(content, media_type):
-    return content_response(content, media_type, f'"sha-256:{hashlib.sha256(content).hexdigest()}"', REVALIDATE)
 
 
 def _with_code(text):
