@@ -1,4 +1,5 @@
 """Numbers and sentences as a person reads them, in English and Spanish, the same characters from every runtime."""
+import math
 import re
 from decimal import ROUND_HALF_UP, Decimal
 
@@ -16,6 +17,8 @@ def number_text(value, unit, units, language):
         return _NO_VALUE[language]
     known = units[unit]
     value = value / known["factor"]
+    if not -math.inf < value < math.inf:      # finite in SI, but not in its own unit
+        return _NO_VALUE[language]
     exponent, digits = _rounded(abs(value))
     prefix = ""
     if known["prefixes"] and value:

@@ -17,6 +17,7 @@ UNITS = bundled()
     (2497123.0, "ohm", "en", "2.497 MΩ"), (0.8889, "volt", "en", "888.9 mV"), (-0.0769, "percent", "en", "-7.69 %"), (0.00004, "ampere", "en", "40 µA"),
     (999.96, "volt", "en", "1 kV"), (12.5, "volt", "es", "12,5 V"), (0.0, "ampere", "en", "0 A"), (-0.0, "ampere", "en", "0 A"), (None, "ohm", "es", "(sin valor)"),
     (1e-10, "farad", "en", "100 pF"), (0.25, "ratio", "en", "0.25"), (3e13, "ohm", "en", "30000 GΩ"), (math.pi / 2, "radian", "en", "1.571 rad"),
+    (1e307, "percent", "en", "(no value)"), (-1e307, "percent", "es", "(sin valor)"),
 ])
 def test_numbers_as_a_person_reads_them(value, unit, language, text):
     assert number_text(value, unit, UNITS, language).replace("\u00a0", " ") == text
