@@ -14,6 +14,8 @@ from precontact_rules.phrase import number_text
 QUESTION = Path(__file__).resolve().parent / "first_question.json"
 _PATIENCE = 60      # seconds until readiness
 _WIDTH = 100
+_DEVELOPMENT = ("DEVELOPMENT KEY: its rule sets are sealed with a key made for this run and gone with it. Before anybody relies on them, set PRECONTACT_KEYS to "
+                "a key file (DEVELOPERS.md, Keys).")
 
 
 def greet(server, host, port):
@@ -66,8 +68,11 @@ def worked_check(host, port):
     if status != 200:
         raise ValueError(answer)
     _, described = _ask(host, port, "GET", path)
+    _, keys = _ask(host, port, "GET", "/v1/keys")
     lines = [
-        f"Precontact is ready on http://{host}:{port} (rule set {answer['rule_set']['version']}). Its API: http://{host}:{port}/  Stop with Ctrl-C.",
+        f"Precontact is ready on http://{host}:{port} (rule set {answer['rule_set']['version']}). Stop with Ctrl-C.",
+        f"Its API: http://{host}:{port}/  The field page, which goes on without a network: http://{host}:{port}/field/",
+        *(["", _paragraph(_DEVELOPMENT, "")] if keys["development"] else []),
         "", f"A check, worked: {question['about']}", "", f"  Verdict: {answer['verdict'].upper()}",
         *(_paragraph(finding["sentence"], "  ") for finding in answer["findings"]),
         "", "  Numbers:", *_numbers(answer, described),

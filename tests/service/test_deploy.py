@@ -19,7 +19,7 @@ RUN = ROOT / "deploy" / "run"
 
 def environment(port):
     """What a fresh shell has: no Python path of ours."""
-    kept = {key: value for key, value in os.environ.items() if key not in ("PYTHONPATH", "VIRTUAL_ENV")}
+    kept = {key: value for key, value in os.environ.items() if key not in ("PYTHONPATH", "VIRTUAL_ENV", "PRECONTACT_KEYS")}
     return {**kept, "PORT": str(port)}
 
 
@@ -42,6 +42,12 @@ def session(tmp_path_factory):
     os.killpg(process.pid, signal.SIGINT)                # what Ctrl-C does: the whole group hears it
     status = process.wait(20)
     return text, answer, port, status
+
+
+def test_the_greeting_names_the_field_page_and_says_loudly_what_its_key_is(session):
+    text, _, port, _ = session
+    assert f"http://127.0.0.1:{port}/field/" in text
+    assert "\nDEVELOPMENT KEY: " in text and "PRECONTACT_KEYS" in text
 
 
 def test_the_worked_check_is_in_words_and_numbers(session):

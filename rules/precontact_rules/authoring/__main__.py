@@ -1,4 +1,4 @@
-"""Command line for people who edit rules."""
+"""Command line for people who edit rules, and for those who publish them."""
 import argparse
 import json
 import sys
@@ -7,9 +7,11 @@ from pathlib import Path
 from .. import released
 from ..engine import RuleSet
 from ..problems import InputProblems
+from ..retirement import RetirementFault, retirements
 from .build import canonical
 from .contrast import contrasted
 from .release import changed_releases, proved, release
+from .sealing_verbs import add_verbs
 from .walk import walked
 
 SOURCE = Path(__file__).resolve().parents[2] / "source"
@@ -17,7 +19,7 @@ SOURCE = Path(__file__).resolve().parents[2] / "source"
 
 def main(arguments=None):
     """Run one verb; returns the exit code."""
-    parser = argparse.ArgumentParser(prog="precontact-rules", description="Check, release and explain Precontact rule sets.")
+    parser = argparse.ArgumentParser(prog="precontact-rules", description="Check, release, explain, seal and publish Precontact rule sets.")
     parser.add_argument("--source", type=Path, default=SOURCE, help="the folder of rule sources")
     verbs = parser.add_subparsers(dest="verb", required=True)
     proofread = verbs.add_parser("proofread", help="check every source file and list every fault")
@@ -34,8 +36,9 @@ def main(arguments=None):
     contrast = verbs.add_parser("contrast", help="what changed between two rule sets, numerically")
     contrast.add_argument("old", help="a released version or digest, or a bundle file")
     contrast.add_argument("new", help="the same, or `source` for the working source")
+    acts = {"proofread": _proofread, "release": _release, "walk": _walk, "contrast": _contrast, **add_verbs(verbs)}
     options = parser.parse_args(arguments)
-    return {"proofread": _proofread, "release": _release, "walk": _walk, "contrast": _contrast}[options.verb](options)
+    return acts[options.verb](options)
 
 
 def _proofread(options):
@@ -74,6 +77,11 @@ def _compare_with_release(bundle):
         print(f"{bundle['version']} is not released yet")
         return 1
     print(f"the source {'is' if same else 'differs from'} release {bundle['version']}")
+    try:
+        retirements(released.FOLDER, [row["version"] for row in released.listing()])
+    except RetirementFault as fault:
+        print(fault)
+        return 1
     return 0 if same and not changed else 1
 
 

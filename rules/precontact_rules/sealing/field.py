@@ -58,9 +58,9 @@ def rule_set_files(ring, folder=released.FOLDER):
     return files
 
 
-def write(files, folder):
-    """Write {relative address: bytes} under `folder` in this order, each file replaced whole; how many. Raises PackFault."""
-    _check_serial(files, folder)
+def write(files, folder, keys=f"{RULE_SET_FOLDER}keys.json"):
+    """Write {relative address: bytes} under `folder` in this order, each file replaced whole; how many. `keys` names the key list among them. Raises PackFault."""
+    _check_serial(folder / keys, files[keys])
     for name, content in files.items():
         path = folder / name
         try:
@@ -73,15 +73,14 @@ def write(files, folder):
     return len(files)
 
 
-def _check_serial(files, folder):
+def _check_serial(path, content):
     """Devices that read the folder take a newer key list only if its serial rises."""
-    name = f"{RULE_SET_FOLDER}keys.json"
-    if not (folder / name).is_file():
+    if not path.is_file():
         return
     try:
-        there, new = KeyList.read((folder / name).read_bytes()), KeyList.read(files[name])
+        there, new = KeyList.read(path.read_bytes()), KeyList.read(content)
     except Refused as refused:
-        raise PackFault(f"{folder / name} is not a key list ({refused.detail}); choose another folder") from None
+        raise PackFault(f"{path} is not a key list ({refused.detail}); choose another folder") from None
     if new.serial < there.serial or (new.serial == there.serial and new.bytes != there.bytes):
-        raise PackFault(f"{folder / name} has serial {there.serial} and these keys have {new.serial}; a changed list needs a serial that rises, "
+        raise PackFault(f"{path} has serial {there.serial} and these keys have {new.serial}; a changed list needs a serial that rises, "
                         "or no device would take it. `precontact-rules cut` and `disown` raise it")

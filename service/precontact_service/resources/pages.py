@@ -6,6 +6,7 @@ from pathlib import Path
 import orjson
 from flask import Blueprint, render_template
 from markupsafe import Markup, escape
+from precontact_rules.sealing import field
 
 from ..openapi import page
 from ..parameters import query
@@ -29,7 +30,7 @@ def blueprint(document):
 
     @lru_cache(maxsize=1)
     def page_bytes():
-        return render_template("api.html", **page.view(document()[0])).encode()
+        return render_template("api.html", field_page="index.html" in field.page_files(), **page.view(document()[0])).encode()
 
     @lru_cache(maxsize=len(TYPES))
     def problem_bytes(code):
