@@ -5,7 +5,7 @@ import pytest
 from precontact_service.door import SECURITY
 
 PATHS = ("/", "/healthz", "/readyz", "/v1/checks", "/v1/rule-sets", "/v1/rule-sets/1.0.0/bundle", "/v1/catalogues/instruments", "/v1/openapi.json", "/problems/missing",
-         "/style.css", "/nowhere", "/v1/catalogues/nothing")
+         "/style.css", "/v1/keys", "/v1/keys/seal", "/v1/rule-sets/1.0.0/seal", "/field/rule-set/latest.json", "/nowhere", "/v1/catalogues/nothing")
 
 
 def check_headers(response, latest):

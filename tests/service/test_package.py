@@ -1,4 +1,5 @@
 """What is installed from this repository has everything that it needs."""
+import os
 import shutil
 import subprocess
 import sys
@@ -26,5 +27,11 @@ def test_the_wheel_holds_releases_pages_and_both_packages(tmp_path):
         assert sources <= names, sources - names
     handheld = {f"precontact_rules/handheld/{path.relative_to(ROOT / 'rules' / 'handheld').as_posix()}" for path in field.page_files().values()}
     assert handheld and handheld <= names, handheld - names
+    # Installed, that is without the source tree beside it, the page is found inside the package.
+    zipfile.ZipFile(next(tmp_path.glob("*.whl"))).extractall(tmp_path / "installed")
+    listing = "from precontact_rules.sealing import field; print(*field.page_files(), field.HANDHELD)"
+    environment = {**os.environ, "PYTHONPATH": str(tmp_path / "installed")}
+    said = subprocess.run([sys.executable, "-c", listing], cwd=tmp_path, env=environment, check=True, capture_output=True, text=True).stdout
+    assert said.split() == [*field.page_files(), str(tmp_path / "installed" / "precontact_rules" / "handheld")]
     script = next(name for name in names if name.endswith("entry_points.txt"))
     assert "precontact-rules" in zipfile.ZipFile(next(tmp_path.glob("*.whl"))).read(script).decode()

@@ -34,7 +34,8 @@ def test_the_list_and_each_of_its_addresses(client):
 
 
 @pytest.mark.parametrize("path", ["/v1/rule-sets", "/v1/rule-sets/1.0.0", "/v1/rule-sets/1.0.0/bundle", "/v1/catalogues", "/v1/catalogues/instruments",
-                                  "/v1/checks", "/v1/checks/loading-error", "/v1/openapi.json", "/", "/style.css"])
+                                  "/v1/checks", "/v1/checks/loading-error", "/v1/keys", "/v1/keys/seal", "/v1/rule-sets/1.0.0/seal",
+                                  "/field/rule-set/latest.json", "/field/rule-set/1.0.0.json", "/field/rule-set/keys.json", "/v1/openapi.json", "/", "/style.css"])
 def test_conditional_requests(client, path):
     plain = client.get(path)
     etag = plain.headers["ETag"]
