@@ -3,257 +3,102 @@
  *
  * Every node that depends on samples has two lanes: "a", the plain formula at the best estimates, and "s", an array over the point set.
  */
-import { KERNELS, SCALARS } from "./elementwise.js";
+import { placesIn } from "./graph.js";
+import { apply, at, axisAt, constantPlace, give, input, isCorrected, laneOf, place, register } from "./machine.js";
+import { axisFrom, axisSize, columnArray, constant } from "./model.js";
 import { overAxesSteps } from "./over-axes-steps.js";
 import { POINTS } from "./points.js";
-import { Shapes } from "./shapes.js";
-import { sampledLeaves } from "./values.js";
 
-const SIDED = ["lt", "le", "gt", "ge"];      // comparisons whose probability can be corrected by the difference of their sides
 const OF_SAMPLES = ["share", "mean", "low_end", "high_end"];
 
-const pools = [new Map(), new Map()];
-
-/** An array of `size` numbers or truth values, from the pool. */
-export function take(size, boolean) {
-  return pools[+boolean].get(size)?.pop() ?? (boolean ? new Uint8Array(size) : new Float64Array(size));
-}
-
-function give(array) {
-  const pool = pools[array instanceof Uint8Array ? 1 : 0], kept = pool.get(array.length);
-  if (kept) kept.push(array);
-  else pool.set(array.length, [array]);
-}
-
-/** Where a value stands: `places` of its axes, and the register `k` of a single number or the array `d` of the present run. */
-class Place {
-  constructor(places, boolean, k) {
-    this.places = places;
-    this.boolean = boolean;
-    this.k = k;
-    this.d = null;
+function leaf(p, { op, extra: [first, second] }, lane, out) {
+  const { model } = p.graph, upTo = (n) => Float64Array.from({ length: n }, (_, i) => i);
+  switch (op) {
+    case "number": return constantPlace(p, first);
+    case "constant": return constantPlace(p, constant(model, first).value);
+    case "truth": return constantPlace(p, +first);
+    case "nothing": return constantPlace(p, NaN);
+    case "slot": return input(p, out(), (request) => request[lane === "a" ? "values" : "sampled"][first]);
+    case "size": return input(p, out(), ({ sizes }) => sizes.get(first));
+    case "column": return Object.assign(out(), { d: columnArray(model, first, second) });
+    case "place": return axisFrom(model, first) === "list" ? input(p, out(), ({ sizes }) => upTo(sizes.get(first)))
+      : Object.assign(out(), { d: upTo(axisSize(model, first)) });
+    default: return null;
   }
 }
 
-/** The compiled steps for a set of [node, lane] wanted by the answer. Run with `run(values, sampled, uniforms, drawn, sizes)`. */
-export class Program {
-  constructor(graph, wanted) {
-    this.graph = graph;
-    this.model = graph.model;
-    this.shapes = new Shapes(graph.order.map((axis) => (axis === "samples" ? POINTS : graph.model.axisFrom(axis) === "list" ? 0 : graph.model.axisSize(axis))));
-    this.lists = graph.model.axes.filter((a) => a.from === "list").map((a) => [a.name, graph.order.indexOf(a.name)]);
-    const needed = this.needed(wanted);
-    this.arrays = needed.some(([node]) => node.axes);
-    this.uniforms = [...new Set(needed.filter(([n, lane]) => n.op === "uniform" && lane === "s").map(([n]) => n.extra[0]))].sort((a, b) => a - b);
-    this.S = new Float64Array(needed.length * 2 + 16);
-    this.used = 0;
-    this.constants = new Map();
-    this.found = new Map();
-    this.steps = [];
-    this.reads = [];      // for each step, the places it reads
-    this.made = [];       // for each step, the place whose array it takes from the pool
-    this.inputs = [];
-    for (const [node, lane] of needed) this.found.set(node.index + lane, this.emit(node, lane));
-    this.results = wanted.map(([node, lane]) => this.at(node, lane));
-    this.spent = this.spentAfter();
-    this.lent = [];
-  }
-
-  // ---- what is needed ----
-
-  lane(node, lane) {
-    return node.axes & this.graph.samples ? lane : "a";
-  }
-
-  needed(wanted) {
-    const found = new Map(), queue = wanted.map(([n, lane]) => [n, this.lane(n, lane)]);
-    while (queue.length) {
-      const [node, lane] = queue.pop(), key = node.index + lane;
-      if (found.has(key)) continue;
-      found.set(key, [node, lane]);
-      const inner = OF_SAMPLES.includes(node.op) ? "s" : lane;
-      for (const a of this.operands(node)) queue.push([a, this.lane(a, inner)]);
-    }
-    return [...found.values()].sort(([a, x], [b, y]) => a.index - b.index || (x < y ? -1 : 1));
-  }
-
-  /** The nodes this one reads. A corrected share reads the sides of its comparison, and sees by itself where they have no value. */
-  operands(node) {
-    return node.op === "share" && this.isCorrected(node.args[0]) ? [node.args[0], ...node.args[0].args] : node.args;
-  }
-
-  isCorrected(condition) {
-    return SIDED.includes(condition.op) && sampledLeaves(condition, this.graph.samples) !== 1;
-  }
-
-  at(node, lane) {
-    return this.found.get(node.index + this.lane(node, lane));
-  }
-
-  // ---- places and steps ----
-
-  register(value) {
-    this.S[this.used] = value;
-    return new Place([], false, this.used++);
-  }
-
-  constant(value) {
-    if (!this.constants.has(value)) this.constants.set(value, this.register(value));
-    return this.constants.get(value);
-  }
-
-  /** A new place for a node's value in a lane. */
-  place(node, lane) {
-    const places = this.graph.places(lane === "s" ? node.axes : node.axes & ~this.graph.samples);
-    return places.length ? new Place(places, node.boolean, -1) : Object.assign(this.register(0), { boolean: node.boolean });
-  }
-
-  step(run, reads, made = null) {
-    this.steps.push(run);
-    this.reads.push(reads);
-    this.made.push(made);
-  }
-
-  emit(node, lane) {
-    const leaf = this.leaf(node, lane);
-    if (leaf) return leaf;
-    const out = this.place(node, lane), special = overAxesSteps[node.op];
-    if (special) special(this, node, lane, out);
-    else this.elementwise(node, lane, out);
+/** The place of a node's value in a lane, and the steps that compute it. */
+function emit(p, node, lane) {
+  const { graph } = p, places = placesIn(graph, lane === "s" ? node.axes : node.axes & ~graph.samples), { op, args, extra, boolean } = node;
+  const found = leaf(p, node, lane, () => (places.length ? place(places, boolean) : register(p, 0, boolean)));
+  if (found) return found;
+  const out = places.length ? place(places, boolean) : register(p, 0, boolean);
+  if (overAxesSteps[op]) {
+    overAxesSteps[op](p, node, out, lane);
     return out;
   }
+  const operands = args.map((a) => at(p, a, lane));
+  if (op === "code_is") operands.push(constantPlace(p, extra[0]));
+  if (op === "indicator" && !operands[1]) operands.push(constantPlace(p, 1));
+  if (op === "uniform") operands.push(lane === "a" ? constantPlace(p, 0.5) : input(p, place([axisAt(p, "samples")]), ({ uniforms }) => uniforms[p.uniforms.indexOf(extra[0])]));
+  apply(p, op === "code_is" ? "eq" : op, operands, out);
+  return out;
+}
 
-  leaf(node, lane) {
-    const [first, second] = node.extra, place = () => this.place(node, lane);
-    switch (node.op) {
-      case "number": return this.constant(first);
-      case "constant": return this.constant(this.model.constant(first).value);
-      case "truth": return Object.assign(this.register(+first), { boolean: true });
-      case "nothing": return this.constant(NaN);
-      case "slot": return this.input(place(), (out, run) => this.put(out, run[lane === "a" ? "values" : "sampled"][first]));
-      case "size": return this.input(place(), (out, run) => this.put(out, run.sizes.get(first)));
-      case "column": return Object.assign(place(), { d: this.model.columnArray(first, second) });
-      case "place": {
-        const upTo = (n) => Float64Array.from({ length: n }, (_, i) => i);
-        if (this.model.axisFrom(first) === "list") return this.input(place(), (out, run) => this.put(out, upTo(run.sizes.get(first))));
-        return Object.assign(place(), { d: upTo(this.model.axisSize(first)) });
-      }
-      default: return null;
+/** [node, lane] of all that has to be computed, operands first. */
+function neededFor(p, wanted) {
+  const found = new Map(), queue = wanted.map(([node, lane]) => [node, laneOf(p, node, lane)]);
+  for (const [node, lane] of queue) {
+    const key = node.index + lane, [first] = node.args;
+    if (found.has(key)) continue;
+    found.set(key, [node, lane]);
+    // A corrected share reads the sides of its comparison, and sees by itself where they have no value.
+    const operands = node.op === "share" && isCorrected(p, first) ? [first, ...first.args] : node.args;
+    for (const a of operands) queue.push([a, laneOf(p, a, OF_SAMPLES.includes(node.op) ? "s" : lane)]);
+  }
+  return [...found.values()].sort(([a], [b]) => a.index - b.index);
+}
+
+/** Say after which step each pooled array may be given back: when nothing still needed reads it. */
+function markSpent({ steps, results }) {
+  const last = new Map();
+  for (const { reads, made, spent } of steps) {
+    for (const from of reads) if (last.has(from)) last.set(from, spent);
+    if (made) last.set(made, spent);
+  }
+  last.forEach((spent, from) => { if (!results.includes(from)) spent.push(from); });
+}
+
+/**
+ * The compiled program of a set of [node, lane] wanted by the answer: {arrays: whether anything runs along an axis, uniforms: numbers of the
+ * unknowns it rests on, run}. run({values, sampled, uniforms, drawn, sizes}) gives one value for each [node, lane] wanted: a number, a boolean, or
+ * {data, sizes}, good until the next run.
+ */
+export function compiled(graph, wanted) {
+  const { model, order } = graph, p = { graph, used: 0, constants: new Map(), found: new Map(), steps: [], inputs: [], version: 0 };
+  p.size = order.map((axis) => (axis === "samples" ? POINTS : axisFrom(model, axis) === "list" ? 0 : axisSize(model, axis)));
+  const needed = neededFor(p, wanted), lists = order.slice(0, -1).filter((axis) => axisFrom(model, axis) === "list");
+  p.uniforms = [...new Set(needed.filter(([{ op }, lane]) => op === "uniform" && lane === "s").map(([node]) => node.extra[0]))].sort((a, b) => a - b);
+  p.S = new Float64Array(needed.length * 2 + 9);
+  for (const [node, lane] of needed) p.found.set(node.index + lane, emit(p, node, lane));
+  p.results = wanted.map(([node, lane]) => at(p, node, lane));
+  markSpent(p);
+  const lent = p.steps.map(({ made }) => made).filter((made) => p.results.includes(made)), truths = p.results.map((_, i) => wanted[i][0].boolean);
+  p.run = (request) => {
+    for (const from of lent) if (from.d) give(from.d);
+    for (const axis of lists) {
+      const k = order.indexOf(axis), size = request.sizes.get(axis);
+      if (p.size[k] !== size) p.version++;
+      p.size[k] = size;
     }
-  }
-
-  input(out, read) {
-    this.inputs.push([out, read]);
-    return out;
-  }
-
-  put(out, value) {
-    if (out.k < 0) out.d = value;
-    else this.S[out.k] = value;
-  }
-
-  elementwise(node, lane, out) {
-    let { op } = node;
-    const operands = node.args.map((a) => this.at(a, lane));
-    if (op === "code_is") {
-      op = "eq";
-      operands.push(this.constant(node.extra[0]));
-    } else if (op === "indicator") {
-      if (operands.length < 2) operands.push(this.constant(1));
-    } else if (op === "uniform") {
-      operands.push(lane === "a" ? this.constant(0.5) : this.coordinates(node.extra[0]));
+    p.drawn = request.drawn;
+    for (const read of p.inputs) read(request);
+    for (const { run, spent } of p.steps) {
+      run();
+      for (const from of spent) give(from.d);
     }
-    this.apply(op, operands, out);
-  }
-
-  coordinates(unknown) {
-    const out = new Place([this.graph.order.length - 1], false, -1), place = this.uniforms.indexOf(unknown);
-    return this.input(out, (_, run) => { out.d = run.uniforms[place]; });
-  }
-
-  /** A step that applies an operation number by number. */
-  apply(op, operands, out) {
-    if (!out.places.length) {
-      this.step(SCALARS[op](this.S, out.k, ...operands.map((o) => o.k)), operands);
-      return;
-    }
-    const loops = this.loops(KERNELS[op], operands, out.places), starts = operands.map((o) => Math.max(o.k, 0)), { S, shapes } = this;
-    this.step(() => {
-      out.d = take(shapes.total(out.places), out.boolean);
-      loops()(out.d, operands.map((o) => o.d ?? S), starts);
-    }, operands, out);
-  }
-
-  /** The loops of a kernel for the sizes of the present run. */
-  loops(kernel, operands, places) {
-    return this.perSizes(() => this.shapes.nest(kernel, places, operands.map((o) => o.places)));
-  }
-
-  /** What depends on the sizes alone, made anew when they change. */
-  perSizes(make) {
-    let version = -1, made;
-    return () => {
-      if (version !== this.shapes.version) {
-        version = this.shapes.version;
-        made = make();
-      }
-      return made;
-    };
-  }
-
-  /** A place for an array that only the next step reads. */
-  temporary(places) {
-    return new Place(places, false, -1);
-  }
-
-  /** The points of a curve, as the present request gives them. */
-  curve(slot) {
-    const out = this.temporary([]);
-    return this.input(out, (_, run) => { out.d = run.values[slot]; });
-  }
-
-  /** For the sizes of the present run: where each element along `to` stands in an array along `from`. */
-  offsets(from, to) {
-    return this.perSizes(() => this.shapes.offsets(from, to));
-  }
-
-  /** The numbers of a place as an array that runs along `places`: its own where it already does. */
-  along(place, places) {
-    if (place.places.length === places.length && place.places.every((p, i) => p === places[i])) return () => place.d ?? this.S.subarray(place.k, place.k + 1);
-    const loops = this.loops(KERNELS.copy, [place], places), start = [Math.max(place.k, 0)];
-    return () => {
-      const out = new (place.boolean ? Uint8Array : Float64Array)(this.shapes.total(places));
-      loops()(out, [place.d ?? this.S], start);
-      return out;
-    };
-  }
-
-  /** [places to give back after step 0, 1, ...]: arrays that nothing still needed reads. */
-  spentAfter() {
-    const last = new Map();
-    this.made.forEach((place, i) => { if (place) last.set(place, i); });
-    this.reads.forEach((places, i) => places.forEach((p) => { if (last.has(p)) last.set(p, i); }));
-    this.results.forEach((place) => last.delete(place));
-    const spent = this.steps.map(() => []);
-    last.forEach((i, place) => spent[i].push(place));
-    return spent;
-  }
-
-  // ---- running ----
-
-  /** One value for each [node, lane] wanted: a number, a boolean, or {data, sizes}, good until the next run. */
-  run(values, sampled, uniforms, drawn, sizes) {
-    const { S, steps, spent, inputs, shapes } = this, run = { values, sampled, uniforms, sizes };
-    for (const array of this.lent) give(array);
-    this.lent = [];
-    for (const [axis, place] of this.lists) shapes.set(place, sizes.get(axis));
-    this.drawn = drawn;
-    for (const [out, read] of inputs) read(out, run);
-    for (let i = 0; i < steps.length; i++) {
-      steps[i]();
-      for (const place of spent[i]) give(place.d);
-    }
-    for (const place of new Set(this.made)) if (place && this.results.includes(place)) this.lent.push(place.d);
-    return this.results.map((place) => (place.k < 0 ? { data: place.d, sizes: place.places.map((p) => shapes.size[p]) } : place.boolean ? S[place.k] !== 0 : S[place.k]));
-  }
+    return p.results.map(({ k, d, places }, i) => (k < 0 ? { data: d, sizes: places.map((q) => p.size[q]) } : truths[i] ? p.S[k] !== 0 : p.S[k]));
+  };
+  p.arrays = needed.some(([node]) => node.axes);
+  return p;
 }

@@ -1,23 +1,16 @@
-/** A table or curve read by its own rule: `between` linear or step; `below` and `above` absent or hold. */
-export class Lookup {
-  constructor({ between, below, above }, data = null) {
-    this.step = between === "step";
-    this.holdBelow = below === "hold";
-    this.holdAbove = above === "hold";
-    this.data = data;
+/**
+ * The reader of a table or curve by its own rule (`between` linear or step; `below` and `above` absent or hold): read(x, [xs, ys]) is the
+ * value at x, NaN where there is none.
+ */
+export const lookup = ({ between, below, above }) => (x, [xs, ys]) => {
+  const last = xs.length - 1;
+  if (x !== x || x < xs[0]) return x < xs[0] && below === "hold" ? ys[0] : NaN;
+  if (x >= xs[last]) return x === xs[last] || above === "hold" ? ys[last] : NaN;
+  let low = 0, high = last;      // the last place at or below x
+  while (high - low > 1) {
+    const middle = (low + high) >> 1;
+    if (xs[middle] <= x) low = middle;
+    else high = middle;
   }
-
-  /** The value at x; NaN where there is none. @param {number} x @param {[ArrayLike<number>, ArrayLike<number>]} data @returns {number} */
-  read(x, [xs, ys] = this.data) {
-    const last = xs.length - 1;
-    if (x !== x || x < xs[0]) return x < xs[0] && this.holdBelow ? ys[0] : NaN;
-    if (x >= xs[last]) return x === xs[last] || this.holdAbove ? ys[last] : NaN;
-    let low = 0, high = last;      // the last place at or below x
-    while (high - low > 1) {
-      const middle = (low + high) >> 1;
-      if (xs[middle] <= x) low = middle;
-      else high = middle;
-    }
-    return this.step ? ys[low] : ys[low] + (ys[low + 1] - ys[low]) * ((x - xs[low]) / (xs[low + 1] - xs[low]));
-  }
-}
+  return between === "step" ? ys[low] : ys[low] + (ys[low + 1] - ys[low]) * ((x - xs[low]) / (xs[low + 1] - xs[low]));
+};

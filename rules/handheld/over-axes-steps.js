@@ -1,75 +1,61 @@
-/** The steps of operations along axes: op -> (program, node, lane, out). */
+/** The steps of operations along axes: op -> (program, node, out, lane). */
+import { along, apply, array, at, axisAt, input, isCorrected, perSizes, place, step } from "./machine.js";
 import { coverageEnds, evenEnds, share } from "./coverage.js";
 import { foldSum } from "./exact-math.js";
 import { REDUCTIONS, atExtreme, placeOf, ranked, running, spreadOnto } from "./kernels.js";
+import { lookupOf } from "./model.js";
 import { POINTS } from "./points.js";
+import { offsets, total } from "./shapes.js";
 import { sampledLeaves } from "./values.js";
 
-const rowsOf = (shapes, places) => shapes.total(places);
-
-/** Places of the axes a node's argument runs along in a lane. */
-const axesIn = (program, axes, lane) => program.graph.places(lane === "s" ? axes : axes & ~program.graph.samples);
-
-/** Sets a step that computes one number for each element of `out`. */
-function each(program, reads, out, compute) {
-  program.step(() => {
-    const next = compute();
-    if (out.k >= 0) {
-      program.S[out.k] = next(0);
-      return;
-    }
-    out.d = new (out.boolean ? Uint8Array : Float64Array)(program.shapes.total(out.places));
-    for (let i = 0; i < out.d.length; i++) out.d[i] = next(i);
-  }, reads);
-}
-
-/** Places of the reduced axes as written, and of those that are kept. */
-function split(program, axes, lane, names) {
-  const reduced = names.map((a) => program.graph.order.indexOf(a));
-  return { reduced, kept: axesIn(program, axes, lane).filter((p) => !reduced.includes(p)) };
-}
-
-function reduction(program, node, lane, out) {
-  const argument = program.at(node.args[0], lane), axis = program.graph.order.indexOf(node.extra[0]), { shapes } = program;
-  const places = [...new Set([...argument.places, axis])].sort((a, b) => a - b), at = places.indexOf(axis), data = program.along(argument, places);
-  program.step(() => {
-    const made = new (out.boolean ? Uint8Array : Float64Array)(shapes.total(out.places));
-    REDUCTIONS[node.op](made, data(), shapes.total(places.slice(0, at)), shapes.size[axis], shapes.total(places.slice(at + 1)));
-    if (out.k < 0) out.d = made;
-    else program.S[out.k] = made[0];
-  }, [argument]);
-}
-
-function extreme(program, node, lane, out) {
-  const [key, x] = node.args.map((a) => program.at(a, lane)), axis = program.graph.order.indexOf(node.extra[0]), { shapes } = program;
-  const places = [...out.places, axis], keys = program.along(key, places), values = program.along(x, places);
-  const plain = !out.places.length && key.places.length && x.places.length, sign = node.op === "at_least" ? 1 : -1;
-  program.step(() => {
-    const made = new Float64Array(shapes.total(out.places));
-    atExtreme(made, keys(), values(), made.length, shapes.size[axis], sign, plain);
-    if (out.k < 0) out.d = made;
-    else program.S[out.k] = made[0];
-  }, [key, x]);
-}
-
-/** Both ends of an interval are found once, whichever of them is asked for. */
-function ends(program, node, out, part) {
-  const argument = program.at(node.args[0], "s"), key = `ends ${node.args[0].index}`;
-  const even = node.args[0].axes === program.graph.samples && sampledLeaves(node.args[0], program.graph.samples) === 1;
-  let found = program.found.get(key);
-  if (!found) {
-    program.found.set(key, (found = { pairs: null }));
-    program.step(() => {
-      found.pairs = endsOfRows(argument.d, (row) => (even ? evenEnds(row) : coverageEnds(row, program.drawn)));
-    }, [argument]);
-  }
-  each(program, [], out, () => (i) => found.pairs[i][part]);
-}
+/** The samples of row r. */
+const row = (data, r) => data.subarray(r * POINTS, (r + 1) * POINTS);
 
 /** [low, high] of each row of samples. */
-export function endsOfRows(data, endsOf) {
-  return Array.from({ length: data.length / POINTS }, (_, r) => endsOf(data.subarray(r * POINTS, (r + 1) * POINTS)));
+export const endsOfRows = (data, endsOf) => Array.from({ length: data.length / POINTS }, (_, r) => endsOf(row(data, r)));
+
+/** A step that fills an array for `out`: fill(array). */
+function fill(p, reads, out, filler) {
+  step(p, reads, () => {
+    const made = array(total(p.size, out.places), out.boolean);
+    filler(made);
+    if (out.k < 0) out.d = made;
+    else p.S[out.k] = made[0];
+  });
 }
+
+/** A step that computes one number for each element of `out`; compute() gives the function of its place. */
+const each = (p, reads, out, compute) => fill(p, reads, out, (made) => {
+  const next = compute();
+  for (let i = 0; i < made.length; i++) made[i] = next(i);
+});
+
+const placesOf = (p, names) => names.map((axis) => axisAt(p, axis));
+const without = (places, reduced) => places.filter((q) => !reduced.includes(q));
+const offsetsOf = (p, from, to) => perSizes(p, (size) => offsets(size, from, to));
+
+function reduction(p, { op, args, extra }, out, lane) {
+  const argument = at(p, args[0], lane), [axis] = placesOf(p, extra), places = [...new Set([...argument.places, axis])].sort((a, b) => a - b);
+  const k = places.indexOf(axis), data = along(p, argument, places), of = (some) => total(p.size, some);
+  fill(p, [argument], out, (made) => REDUCTIONS[op](made, data(), of(places.slice(0, k)), p.size[axis], of(places.slice(k + 1))));
+}
+
+const extreme = (sign) => (p, { args, extra }, out, lane) => {
+  const [key, x] = args.map((a) => at(p, a, lane)), [axis] = placesOf(p, extra), places = [...out.places, axis];
+  const keys = along(p, key, places), values = along(p, x, places), plain = !out.places.length && key.places.length && x.places.length;
+  fill(p, [key, x], out, (made) => atExtreme(made, keys(), values(), made.length, p.size[axis], sign, plain));
+};
+
+/** Both ends of an interval are found once, whichever of them is asked for. */
+const end = (part) => (p, { args: [x] }, out) => {
+  const argument = at(p, x, "s"), { samples } = p.graph, key = `ends ${x.index}`, even = x.axes === samples && sampledLeaves(x, samples) === 1;
+  if (!p.found.has(key)) {
+    const found = {};
+    p.found.set(key, found);
+    step(p, [argument], () => { found.pairs = endsOfRows(argument.d, (samples) => (even ? evenEnds(samples) : coverageEnds(samples, p.drawn))); });
+  }
+  each(p, [], out, () => (i) => p.found.get(key).pairs[i][part]);
+};
 
 export const overAxesSteps = {
   any: reduction,
@@ -78,84 +64,74 @@ export const overAxesSteps = {
   sum: reduction,
   least: reduction,
   greatest: reduction,
-  at_least: extreme,
-  at_greatest: extreme,
-  low_end: (program, node, lane, out) => ends(program, node, out, 0),
-  high_end: (program, node, lane, out) => ends(program, node, out, 1),
-  mean(program, node, lane, out) {
-    const argument = program.at(node.args[0], "s");
-    each(program, [argument], out, () => (r) => foldSum(argument.d, r * POINTS, POINTS) / POINTS);
+  at_least: extreme(1),
+  at_greatest: extreme(-1),
+  low_end: end(0),
+  high_end: end(1),
+  mean(p, { args: [x] }, out) {
+    const argument = at(p, x, "s");
+    each(p, [argument], out, () => (r) => foldSum(argument.d, r * POINTS, POINTS) / POINTS);
   },
-  share(program, node, lane, out) {
-    const [condition] = node.args, holds = program.at(condition, "s"), row = (x, r) => x.subarray(r * POINTS, (r + 1) * POINTS);
-    if (program.isCorrected(condition)) {
-      const sides = condition.args.map((a) => program.at(a, "s")), difference = program.temporary(holds.places);
-      program.apply("sub", sides, difference);
-      const positive = condition.op === "gt" || condition.op === "ge";
-      each(program, [holds, difference], out, () => (r) => share(row(holds.d, r), row(difference.d, r), positive, program.drawn));
+  share(p, { args: [condition, known] }, out) {
+    const holds = at(p, condition, "s"), { op, args } = condition;
+    if (isCorrected(p, condition)) {
+      const difference = place(holds.places);
+      apply(p, "sub", args.map((a) => at(p, a, "s")), difference);
+      each(p, [holds, difference], out, () => (r) => share(row(holds.d, r), row(difference.d, r), op[0] === "g", p.drawn));
       return;
     }
-    const known = node.args.length > 1 ? program.at(node.args[1], "s") : program.constant(1), everywhere = program.along(known, holds.places);
-    each(program, [holds, known], out, () => {
-      const certain = everywhere();
-      return (r) => {
-        let count = 0;
-        for (let i = r * POINTS; i < (r + 1) * POINTS; i++) {
-          if (!certain[i]) return NaN;
-          count += holds.d[i];
-        }
-        return count / POINTS;
-      };
+    const certain = known && at(p, known, "s"), everywhere = certain ? along(p, certain, holds.places) : () => null;
+    each(p, [holds, ...(certain ? [certain] : [])], out, () => {
+      const all = everywhere();
+      return (r) => (all && row(all, r).includes(0) ? NaN : row(holds.d, r).reduce((count, h) => count + h, 0) / POINTS);
     });
   },
-  lookup(program, node, lane, out) {
-    const argument = program.at(node.args[0], lane), look = program.model.lookup(node.extra);
-    const curve = node.extra[0] === "curve" ? program.curve(node.extra[1]) : { d: look.data };
-    each(program, [argument], out, () => (argument.k < 0 ? (i) => look.read(argument.d[i], curve.d) : () => look.read(program.S[argument.k], curve.d)));
+  lookup(p, { args, extra }, out, lane) {
+    const argument = at(p, args[0], lane), [read, data] = lookupOf(p.graph.model, extra), xs = along(p, argument, argument.places);
+    const points = data ? { d: data } : input(p, place([]), ({ values }) => values[extra[1]]);
+    each(p, [argument], out, () => {
+      const x = xs();
+      return (i) => read(x[i], points.d);
+    });
   },
-  ranking(program, node, lane, out) {
-    const { reduced, kept } = split(program, node.axes, lane, node.extra), places = [...kept, ...reduced], { shapes } = program;
-    const [x, weight] = node.args.map((a) => program.at(a, lane)), xs = program.along(x, places), weights = program.along(weight, places);
-    out.places = kept;
-    program.step(() => { out.ranked = ranked(xs(), weights(), rowsOf(shapes, kept), shapes.total(reduced)); }, [x, weight]);
+  ranking(p, { args, extra }, out, lane) {
+    const reduced = placesOf(p, extra), places = [...out.places, ...reduced], [x, weight] = args.map((a) => at(p, a, lane));
+    const xs = along(p, x, places), weights = along(p, weight, places);
+    step(p, [x, weight], () => { out.ranked = ranked(xs(), weights(), total(p.size, out.places), total(p.size, reduced)); });
   },
-  quantile(program, node, lane, out) {
-    const [ranking, asked] = node.args.map((a) => program.at(a, lane)), { reduced } = split(program, 0, lane, node.extra);
-    const rows = program.offsets(ranking.places, out.places), shares = program.along(asked, out.places);
-    each(program, [asked], out, () => {
-      const { x, sums } = ranking.ranked, n = program.shapes.total(reduced), row = rows(), wanted = shares();
+  quantile(p, { args, extra }, out, lane) {
+    const [ranking, asked] = args.map((a) => at(p, a, lane)), rows = offsetsOf(p, ranking.places, out.places), shares = along(p, asked, out.places);
+    each(p, [asked], out, () => {
+      const { x, sums } = ranking.ranked, n = total(p.size, placesOf(p, extra)), from = rows(), wanted = shares();
       return (i) => {
-        const place = placeOf(sums, row[i], n, wanted[i]), last = x[row[i] * n + n - 1];      // an absent value sorts last
-        return place < 0 || last !== last ? NaN : x[row[i] * n + place];
+        const found = placeOf(sums, from[i], n, wanted[i]), last = x[from[i] * n + n - 1];      // an absent value sorts last
+        return found < 0 || last !== last ? NaN : x[from[i] * n + found];
       };
     });
   },
-  share_place(program, node, lane, out) {
-    const [weight, asked] = node.args.map((a) => program.at(a, lane)), { reduced } = split(program, 0, lane, node.extra);
-    const kept = weight.places.filter((p) => !reduced.includes(p)), weights = program.along(weight, [...kept, ...reduced]);
-    const rows = program.offsets(kept, out.places), shares = program.along(asked, out.places);
-    each(program, [weight, asked], out, () => {
-      const n = program.shapes.total(reduced), sums = running(weights(), program.shapes.total(kept), n), row = rows(), wanted = shares();
-      return (i) => placeOf(sums, row[i], n, wanted[i]);
+  share_place(p, { args, extra }, out, lane) {
+    const [weight, asked] = args.map((a) => at(p, a, lane)), reduced = placesOf(p, extra), kept = without(weight.places, reduced);
+    const weights = along(p, weight, [...kept, ...reduced]), rows = offsetsOf(p, kept, out.places), shares = along(p, asked, out.places);
+    each(p, [weight, asked], out, () => {
+      const n = total(p.size, reduced), sums = running(weights(), total(p.size, kept), n), from = rows(), wanted = shares();
+      return (i) => placeOf(sums, from[i], n, wanted[i]);
     });
   },
-  at_place(program, node, lane, out) {
-    const [x, place] = node.args.map((a) => program.at(a, lane)), { reduced } = split(program, 0, lane, node.extra);
-    const kept = x.places.filter((p) => !reduced.includes(p)), xs = program.along(x, [...kept, ...reduced]);
-    const rows = program.offsets(kept, out.places), read = program.along(place, out.places);
-    each(program, [x, place], out, () => {
-      const n = program.shapes.total(reduced), values = xs(), row = rows(), at = read();
-      return (i) => (at[i] < 0 ? NaN : values[row[i] * n + at[i]]);
+  at_place(p, { args, extra }, out, lane) {
+    const [x, found] = args.map((a) => at(p, a, lane)), reduced = placesOf(p, extra), kept = without(x.places, reduced);
+    const xs = along(p, x, [...kept, ...reduced]), rows = offsetsOf(p, kept, out.places), places = along(p, found, out.places);
+    each(p, [x, found], out, () => {
+      const n = total(p.size, reduced), values = xs(), from = rows(), read = places();
+      return (i) => (read[i] < 0 ? NaN : values[from[i] * n + read[i]]);
     });
   },
-  spread_onto(program, node, lane, out) {
-    const [onto, ...names] = node.extra, target = program.graph.order.indexOf(onto), { shapes } = program;
-    const [position, weight] = node.args.map((a) => program.at(a, lane)), { reduced } = split(program, 0, lane, names);
-    const kept = out.places.filter((p) => p !== target), places = [...kept, ...reduced];
-    const positions = program.along(position, places), weights = program.along(weight, places), from = program.offsets([...kept, target], out.places);
-    program.step(() => {
-      const made = spreadOnto(positions(), weights(), shapes.total(kept), shapes.total(reduced), shapes.size[target]), place = from();
-      out.d = made.map((_, i) => made[place[i]]);
-    }, [position, weight]);
+  spread_onto(p, { args, extra }, out, lane) {
+    const [onto, ...reduced] = placesOf(p, extra), [position, weight] = args.map((a) => at(p, a, lane)), kept = without(out.places, [onto]);
+    const places = [...kept, ...reduced], positions = along(p, position, places), weights = along(p, weight, places);
+    const rows = offsetsOf(p, [...kept, onto], out.places);
+    each(p, [position, weight], out, () => {
+      const made = spreadOnto(positions(), weights(), total(p.size, kept), total(p.size, reduced), p.size[onto]), from = rows();
+      return (i) => made[from[i]];
+    });
   },
 };

@@ -1,9 +1,11 @@
 /** One check compiled for one signature: the steps, and where in their results each part of the answer is found. */
-import { Program } from "./compile.js";
+import { compiled } from "./compile.js";
 import { coverageEnds, evenEnds } from "./coverage.js";
-import { Graph } from "./graph.js";
+import { bit, conditionOf } from "./graph.js";
+import { axisFrom, fixedOrigins, isWeak } from "./model.js";
 import { endsOfRows } from "./over-axes-steps.js";
-import { Absent, Key, Node, sampledLeaves } from "./values.js";
+import { specialised } from "./specialise.js";
+import { isAbsent, isComplex, isKey, isNode, isSettled, sampledLeaves } from "./values.js";
 
 const HIDDEN_AXES = ["count", "table"];
 
@@ -28,18 +30,17 @@ export class Plan {
     this.model = model;
     this.states = states;
     this.layouts = new Map();
-    const graph = (this.graph = new Graph(model, states, filled));
-    for (const formula of model.formulas) graph.formula(formula.name);      // in dependency order, so that no recursion grows deep
+    const graph = (this.graph = specialised(model, states, filled));
     this.wanted = [];
     this.places = new Map();
     this.ends = new Map();      // place of samples reported with an interval -> how its ends are found
-    this.holding = model.findings.map((f) => ("when" in f ? graph.condition(f.when) : true));
+    this.holding = model.findings.map((f) => ("when" in f ? conditionOf(graph, f.when) : true));
     this.live = this.holding.map((value, number) => [number, this.placeOf(value)]).filter(([, place]) => place !== false);
-    const conditions = (list = []) => list.map(({ when }) => this.placeOf(when === undefined || when === null ? true : graph.condition(when)));
+    const conditions = (list = []) => list.map(({ when }) => this.placeOf(when === undefined || when === null ? true : conditionOf(graph, when)));
     this.cautions = conditions(model.declared.cautions);
     this.assumptions = conditions(model.declared.assumptions);
     this.outputs = new Map(model.formulas.map((f) => [f.name, this.output(f)]));
-    this.program = new Program(graph, this.wanted);
+    this.program = compiled(graph, this.wanted);
     this.uniformCount = this.program.uniforms.length;      // those that something reported rests on
     this.bases = new Map();
     this.sampled = states.map((_, i) => i).filter((i) => isSampled(model.slots[i], states[i]));
@@ -53,19 +54,19 @@ export class Plan {
   }
 
   placeOf(condition) {
-    return typeof condition === "boolean" ? condition : this.want(condition);
+    return isSettled(condition) ? condition : this.want(condition);
   }
 
   output(formula) {
     const { model, graph } = this, output = new Output(formula, model.bundle.units), value = graph.values.get(formula.name);
-    if (value instanceof Absent) {
+    if (isAbsent(value)) {
       output.absent = value;
-    } else if (typeof value === "boolean" || value instanceof Key) {
-      output.fixed = value instanceof Key ? value.key : value;
+    } else if (isSettled(value) || isKey(value)) {
+      output.fixed = value.key ?? value;
     } else {
-      const parts = value instanceof Node ? [value] : [value.re, value.im], axes = parts.reduce((all, p) => all | p.axes, 0);
-      output.axes = model.axes.map((a) => a.name).filter((a) => axes & graph.bit(a));
-      output.hidden = output.axes.filter((a) => HIDDEN_AXES.includes(model.axisFrom(a)));
+      const parts = isComplex(value) ? [value.re, value.im] : [value], axes = parts.reduce((all, p) => all | p.axes, 0);
+      output.axes = model.axes.map((a) => a.name).filter((a) => axes & bit(graph, a));
+      output.hidden = output.axes.filter((a) => HIDDEN_AXES.includes(axisFrom(model, a)));
       if (!output.hidden.length) this.place(output, parts, axes);
     }
     return output;
@@ -97,7 +98,7 @@ export class Plan {
   /** {fixed: [name, record] of the unverified numbers of the bundle, slots} on which the conditions of findings 0..decided rest. */
   basis(decided) {
     if (this.bases.has(decided)) return this.bases.get(decided);
-    const seen = new Set(), leaves = new Map(), queue = this.holding.slice(0, decided + 1).filter((n) => n instanceof Node);
+    const seen = new Set(), leaves = new Map(), queue = this.holding.slice(0, decided + 1).filter(isNode);
     while (queue.length) {
       const node = queue.pop();
       if (seen.has(node.index)) continue;
@@ -109,7 +110,7 @@ export class Plan {
     for (const key of [...leaves.keys()].sort()) {
       const leaf = leaves.get(key);
       if (leaf[0] === "slot" || leaf[1] === "curve") slots.push(leaf.at(-1));
-      else this.model.fixedOrigins(leaf).filter(([, record]) => this.model.isWeak(record)).forEach(([name, record]) => fixed.set(name, record));
+      else fixedOrigins(this.model, leaf).filter(([, record]) => isWeak(this.model, record)).forEach(([name, record]) => fixed.set(name, record));
     }
     const basis = { fixed: [...fixed], slots };
     this.bases.set(decided, basis);

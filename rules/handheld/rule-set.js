@@ -51,12 +51,12 @@ class Question {
     const intake = this.intake(body), plan = this.plan(intake), { program } = plan;
     let results, intervals = null, beyond = NOTHING;
     if (plan.exact) {
-      results = program.run(intake.values, NOTHING, NOTHING, null, intake.sizes);
+      results = program.run(intake);
     } else {
       const { values, sampled, forms, outside } = this.sample(intake, plan);
       const uniforms = program.uniforms.map((_, k) => this.points.coordinates("u", forms.length + k));
       const drawn = this.points.drawn(forms + "r".repeat(plan.uniformCount));
-      results = program.run(values, sampled, uniforms, drawn, intake.sizes);
+      results = program.run({ values, sampled, uniforms, drawn, sizes: intake.sizes });
       intervals = plan.intervals(results, drawn);
       beyond = outside;
     }

@@ -1,80 +1,46 @@
-/** How operands along different axes line up: sizes, strides, and nests of loops. An axis is its place in the graph's order. */
+/** How operands along different axes line up: sizes, strides, and nests of loops. An axis is its place in the order of axes; `size` has the sizes. */
 import { KERNELS } from "./elementwise.js";
 
-/** Sizes of the axes of one run. The version rises when a list has another length than before. */
-export class Shapes {
-  /** @param {number[]} fixed size of every axis; that of a list is set for each run */
-  constructor(fixed) {
-    this.size = fixed;
-    this.version = 0;
-  }
+/** How many elements run along some axes. */
+export const total = (size, places) => places.reduce((product, p) => product * size[p], 1);
 
-  set(place, size) {
-    if (this.size[place] === size) return;
-    this.size[place] = size;
-    this.version++;
-  }
+/** Step in an array that runs along `from` (in that order) for each of the places in `to`; 0 where it does not run along one. */
+const strides = (size, from, to) => to.map((p) => (from.includes(p) ? total(size, from.slice(from.indexOf(p) + 1)) : 0));
 
-  total(places) {
-    return places.reduce((product, p) => product * this.size[p], 1);
+/** For each element along `to`, the place of its element in an array that runs along `from`. */
+export function offsets(size, from, to) {
+  const steps = strides(size, from, to), found = new Int32Array(total(size, to));
+  let filled = 1;
+  for (let k = to.length - 1; k >= 0; k--) {
+    const width = filled;
+    for (let i = 1; i < size[to[k]]; i++) for (let j = 0; j < width; j++) found[filled++] = found[j] + i * steps[k];
   }
-
-  /** Step in an array that runs along `from` (in that order) for each of the places in `to`; 0 where it does not run along one. */
-  strides(from, to) {
-    const step = new Map();
-    let width = 1;
-    for (let k = from.length - 1; k >= 0; k--) {
-      step.set(from[k], width);
-      width *= this.size[from[k]];
-    }
-    return to.map((p) => step.get(p) ?? 0);
-  }
-
-  /** For each element along `to`, the place of its element in an array that runs along `from`. */
-  offsets(from, to) {
-    const strides = this.strides(from, to), found = new Int32Array(this.total(to));
-    let filled = 1;
-    for (let k = to.length - 1; k >= 0; k--) {
-      const width = filled;
-      for (let i = 1; i < this.size[to[k]]; i++) for (let j = 0; j < width; j++) found[filled++] = found[j] + i * strides[k];
-    }
-    return found;
-  }
-
-  /**
-   * Loops that run a kernel along the places `to`: run(out, arrays, starts).
-   * @param {Function} kernel @param {number[]} to @param {number[][]} operands the places each operand runs along
-   */
-  nest(kernel, to, operands) {
-    let sizes = [], strides = operands.map(() => []);
-    const all = operands.map((from) => this.strides(from, to));
-    to.forEach((p, k) => {      // neighbouring axes along which every operand steps evenly are one
-      const last = sizes.length - 1, size = this.size[p];
-      if (last >= 0 && all.every((s, i) => strides[i][last] === s[k] * size)) {
-        sizes[last] *= size;
-        all.forEach((s, i) => { strides[i][last] = s[k]; });
-      } else {
-        sizes.push(size);
-        all.forEach((s, i) => { strides[i].push(s[k]); });
-      }
-    });
-    const inner = sizes.length - 1, [sa, sb = [], sc = []] = strides, widths = sizes.map((_, d) => sizes.slice(d + 1).reduce((a, b) => a * b, 1));
-    return (out, [a, b, c], [startA, startB, startC]) => {
-      const visit = (d, o, ia, ib, ic) => {
-        if (d === inner) {
-          kernel(out, o, sizes[d], a, ia, sa[d], b, ib, sb[d], c, ic, sc[d]);
-          return;
-        }
-        for (let i = 0; i < sizes[d]; i++) visit(d + 1, o + i * widths[d], ia + i * sa[d], ib + i * sb[d], ic + i * sc[d]);
-      };
-      visit(0, 0, startA, startB, startC);
-    };
-  }
-
-  /** A copy of `data`, which runs along `from`, laid out along `to`. */
-  laidOut(data, start, from, to, out) {
-    if (!to.length) out[0] = data[start];
-    else this.nest(KERNELS.copy, to, [from])(out, [data], [start]);
-    return out;
-  }
+  return found;
 }
+
+/**
+ * Loops that run a kernel along the places `to`: run(out, start of out, arrays, their starts). `operands` has the places each array runs along.
+ */
+export function nest(size, kernel, to, operands) {
+  const sizes = [], steps = [[], [], []], all = operands.map((from) => strides(size, from, to));
+  to.forEach((p, k) => {
+    let last = sizes.length - 1;
+    // Neighbouring axes along which every operand steps evenly are one.
+    if (last >= 0 && all.every((s, i) => steps[i][last] === s[k] * size[p])) sizes[last] *= size[p];
+    else last = sizes.push(size[p]) - 1;
+    all.forEach((s, i) => { steps[i][last] = s[k]; });
+  });
+  const inner = Math.max(sizes.length - 1, 0), [sa, sb, sc] = steps, n = sizes[inner] ?? 1;
+  const visit = (out, a, b, c, d, o, ia, ib, ic) => {
+    if (d === inner) {
+      kernel(out, o, n, a, ia, sa[d], b, ib, sb[d], c, ic, sc[d]);
+      return;
+    }
+    const width = sizes.slice(d + 1).reduce((x, y) => x * y, 1);
+    for (let i = 0; i < sizes[d]; i++) visit(out, a, b, c, d + 1, o + i * width, ia + i * sa[d], ib + i * sb[d], ic + i * sc[d]);
+  };
+  return (out, o, [a, b, c], [ia, ib, ic]) => visit(out, a, b, c, 0, o, ia, ib, ic);
+}
+
+/** The copying loops that lay an array along `from` out along `to`. */
+export const layOut = (size, from, to) => nest(size, KERNELS.copy, to, [from]);

@@ -1,100 +1,91 @@
 /** How comparisons, conditionals and questions of absence become nodes, or are settled by the signature. */
-import { Absent, COMPARISONS, Key, Node, Pair, missing } from "./values.js";
+import { conditionOf, node, number, test, valueOf } from "./graph.js";
+import { columnField } from "./model.js";
+import { COMPARISONS, isAbsent, isComplex, isKey, isNode, isSettled, missing } from "./values.js";
 
-const settled = (value) => typeof value === "boolean";
-const asNode = (g, value) => (settled(value) ? g.test("truth", [], [value]) : value);
+const asNode = (g, value) => (isSettled(value) ? test(g, "truth", [], [value]) : value);
 
-export const both = (g, a, b) => g.test("and", [a, b]);
-const not = (g, a) => g.test("not", [a]);
-const codeIs = (g, codes, code) => g.test("code_is", [codes], [code]);
+export const both = (g, a, b) => test(g, "and", [a, b]);
+const not = (g, a) => test(g, "not", [a]);
+const codeIs = (g, codes, code) => test(g, "code_is", [codes], [code]);
 const known = (g, codes) => not(g, codeIs(g, codes, -1));
 
-/** Whether a node has a value: true where that is certain. */
-export const hasValue = (g, node) => (node.sure ? true : g.test("finite", [node]));
-
-function valueOfBoth(g, { re, im }) {
-  const a = hasValue(g, re), b = hasValue(g, im);
+/** Whether a value is there: true where that is certain. */
+export function hasValue(g, value) {
+  if (!isComplex(value)) return !isNode(value) || value.sure || test(g, "finite", [value]);
+  const a = hasValue(g, value.re), b = hasValue(g, value.im);
   return a === true ? b : b === true ? a : both(g, a, b);
 }
 
-function choiceCode(g, node, key) {
-  const field = node.op === "slot" ? g.model.slots[node.extra[0]].field : g.model.columnField(...node.extra);
+function codeOf({ model }, { op, extra }, key) {
+  const field = op === "slot" ? model.slots[extra[0]].field : columnField(model, ...extra);
   return field.choices.findIndex((c) => c.key === key);
 }
 
-function compareKeys(g, op, a, b) {
-  if (a instanceof Key && b instanceof Key) return (a.key === b.key) === (op === "eq");
-  const [codes, { key }] = b instanceof Key ? [a, b] : [b, a];
-  const same = codeIs(g, codes, choiceCode(g, codes, key));
-  return op === "eq" ? same : both(g, known(g, codes), not(g, same));
-}
-
 function compare(g, op, a, b) {
-  if (a instanceof Absent || b instanceof Absent) return false;
-  if (a instanceof Key || b instanceof Key) return compareKeys(g, op, a, b);
-  return g.test(op, settled(a) || settled(b) ? [asNode(g, a), asNode(g, b)] : [a, b]);
+  if (isAbsent(a) || isAbsent(b)) return false;
+  if (isKey(a) && isKey(b)) return (a.key === b.key) === (op === "eq");
+  if (isKey(a)) [a, b] = [b, a];
+  if (!isKey(b)) return test(g, op, isSettled(a) || isSettled(b) ? [asNode(g, a), asNode(g, b)] : [a, b]);
+  const same = codeIs(g, a, codeOf(g, a, b.key));
+  return op === "eq" ? same : both(g, known(g, a), not(g, same));
 }
 
 function either(g, a, b) {
   if (a === true || b === true) return true;
-  return a === false ? b : b === false ? a : g.test("or", [a, b]);
+  return a === false ? b : b === false ? a : test(g, "or", [a, b]);
 }
 
 function select(g, condition, a, b) {
-  if (settled(condition)) return condition ? a : b;
-  if (a instanceof Pair || b instanceof Pair) {
-    [a, b] = [a, b].map((v) => (v instanceof Absent ? new Pair(v, v) : v instanceof Pair ? v : new Pair(v, g.number(0))));
-    return new Pair(select(g, condition, a.re, b.re), select(g, condition, a.im, b.im));
+  if (isSettled(condition)) return condition ? a : b;
+  if (isComplex(a) || isComplex(b)) {
+    [a, b] = [a, b].map((v) => (isComplex(v) ? v : { re: v, im: isAbsent(v) ? v : number(g, 0) }));
+    return { re: select(g, condition, a.re, b.re), im: select(g, condition, a.im, b.im) };
   }
-  if ([a, b].some((v) => settled(v) || (v instanceof Node && v.boolean))) {
-    return g.test("select", [condition, ...[a, b].map((v) => asNode(g, v instanceof Absent ? false : v))]);
-  }
-  const sure = a instanceof Node && a.sure && b instanceof Node && b.sure;
-  return g.node("select", [condition, ...[a, b].map((v) => (v instanceof Absent ? g.node("nothing", []) : v))], { sure });
+  if ([a, b].some((v) => isSettled(v) || v.boolean)) return test(g, "select", [condition, ...[a, b].map((v) => asNode(g, isAbsent(v) ? false : v))]);
+  const sure = a.sure === true && b.sure === true, args = [a, b].map((v) => (isAbsent(v) ? node(g, "nothing", []) : v));
+  return node(g, "select", [condition, ...args], [], undefined, sure);
 }
 
 export const truth = {
-  in: (g, a, keys) => keys.reduce((result, key) => either(g, result, compare(g, "eq", g.value(a), new Key(key))), false),
+  in: (g, a, keys) => keys.reduce((result, key) => either(g, result, compare(g, "eq", valueOf(g, a), { key })), false),
   and(g, a, b) {
-    a = g.condition(a);
+    a = conditionOf(g, a);
     if (a === false) return false;
-    b = g.condition(b);
+    b = conditionOf(g, b);
     if (a === true || b === false) return b;
     return b === true ? a : both(g, a, b);
   },
-  or: (g, a, b) => either(g, g.condition(a), g.condition(b)),
+  or: (g, a, b) => either(g, conditionOf(g, a), conditionOf(g, b)),
   not(g, a) {
-    a = g.condition(a);
-    return settled(a) ? !a : not(g, a);
+    a = conditionOf(g, a);
+    return isSettled(a) ? !a : not(g, a);
   },
   given(g, a) {
-    a = g.value(a);
-    if (a instanceof Absent) return false;
-    if (a instanceof Key || settled(a)) return true;
-    if (a instanceof Pair) return valueOfBoth(g, a);
+    a = valueOf(g, a);
+    if (isAbsent(a)) return false;
     return a.op === "slot" && g.model.slots[a.extra[0]].kind === "choice" ? known(g, a) : hasValue(g, a);
   },
   first_of(g, ...trees) {
     const lacking = [], options = [];
     for (const tree of trees) {
-      const value = g.value(tree);
-      if (value instanceof Absent) {
+      const value = valueOf(g, tree), { re, im } = value;
+      if (isAbsent(value)) {
         lacking.push(value);
         continue;
       }
       options.push(value);
-      if (value instanceof Pair ? value.re.sure && value.im.sure : !(value instanceof Node) || value.sure) break;
+      if (isComplex(value) ? re.sure && im.sure : !isNode(value) || value.sure) break;
     }
-    if (!options.length) return missing(lacking);
-    return options.reduceRight((result, value) => select(g, value instanceof Pair ? valueOfBoth(g, value) : hasValue(g, value), value, result));
+    return options.length ? options.reduceRight((result, value) => select(g, hasValue(g, value), value, result)) : missing(lacking);
   },
   if(g, condition, a, b) {
-    condition = g.condition(condition);
-    if (settled(condition)) return g.value(condition ? a : b);
-    a = g.value(a);
-    b = g.value(b);
-    return a instanceof Absent && b instanceof Absent ? missing([a, b]) : select(g, condition, a, b);
+    condition = conditionOf(g, condition);
+    if (isSettled(condition)) return valueOf(g, condition ? a : b);
+    a = valueOf(g, a);
+    b = valueOf(g, b);
+    return isAbsent(a) && isAbsent(b) ? missing([a, b]) : select(g, condition, a, b);
   },
 };
 
-for (const op of COMPARISONS) truth[op] = (g, a, b) => compare(g, op, g.value(a), g.value(b));
+for (const op of COMPARISONS) truth[op] = (g, a, b) => compare(g, op, valueOf(g, a), valueOf(g, b));

@@ -1,0 +1,98 @@
+/**
+ * What a program is made of: places for values, an input for what a request gives, and steps on registers for single numbers and typed arrays for what runs along axes.
+ */
+import { KERNELS } from "./elementwise.js";
+import { nest, total } from "./shapes.js";
+import { sampledLeaves } from "./values.js";
+
+const SIDED = ["lt", "le", "gt", "ge"];      // comparisons whose probability can be corrected by the difference of their sides
+
+const pool = new Map();      // arrays that no run uses, by kind and length
+
+const kindOf = (size, boolean) => size * 2 + boolean;
+const take = (size, boolean) => pool.get(kindOf(size, boolean))?.pop() ?? array(size, boolean);
+
+/** A new array of numbers or truth values. */
+export const array = (size, boolean) => (boolean ? new Uint8Array(size) : new Float64Array(size));
+
+/** Give an array back to the pool. */
+export function give(data) {
+  const key = kindOf(data.length, data instanceof Uint8Array);
+  if (pool.has(key)) pool.get(key).push(data);
+  else pool.set(key, [data]);
+}
+
+/** The lane in which a node is computed where another asks for `lane`. */
+export const laneOf = ({ graph }, node, lane) => (node.axes & graph.samples ? lane : "a");
+
+/** Whether the probability of a comparison is corrected: on one uncertain input alone the points are even. */
+export const isCorrected = ({ graph }, condition) => SIDED.includes(condition.op) && sampledLeaves(condition, graph.samples) !== 1;
+
+/** Where a node's value stands in a lane. */
+export const at = (p, node, lane) => p.found.get(node.index + laneOf(p, node, lane));
+
+/** The place of an axis in the order of axes. */
+export const axisAt = ({ graph }, axis) => graph.order.indexOf(axis);
+
+/** A place {places, boolean, k, d}: `places` of the axes a value runs along, and its register `k` in S (-1: none) or its array `d` of the present run. */
+export const place = (places, boolean = false, k = -1) => ({ places, boolean, k, d: null });
+
+/** A place for a single number. */
+export function register(p, value, boolean) {
+  p.S[p.used] = value;
+  return place([], boolean, p.used++);
+}
+
+/** The place of a number that never changes. */
+export function constantPlace(p, value) {
+  if (!p.constants.has(value)) p.constants.set(value, register(p, value));
+  return p.constants.get(value);
+}
+
+/** Add a step to the program; `reads` are the places it reads, `made` the one whose array it takes from the pool. */
+export const step = (p, reads, run, made) => p.steps.push({ run, reads, made, spent: [] });
+
+/** A place that is set from the request before each run. */
+export function input(p, out, read) {
+  p.inputs.push((request) => {
+    const value = read(request);
+    if (out.k < 0) out.d = value;
+    else p.S[out.k] = value;
+  });
+  return out;
+}
+
+/** What depends on the sizes of lists alone, made anew when they change. */
+export function perSizes(p, make) {
+  let version, made;
+  return () => {
+    if (version !== p.version) made = make(p.size);
+    version = p.version;
+    return made;
+  };
+}
+
+/** A step that applies an operation number by number. */
+export function apply(p, op, operands, out) {
+  const kernel = KERNELS[op], [x, y = x, z = x] = operands, starts = operands.map((o) => Math.max(o.k, 0)), [i, j, l] = starts, { S } = p;
+  if (out.k >= 0) {
+    step(p, operands, () => kernel(S, out.k, 1, S, i, 0, S, j, 0, S, l, 0));
+    return;
+  }
+  const loops = perSizes(p, (size) => nest(size, kernel, out.places, operands.map((o) => o.places)));
+  step(p, operands, () => {
+    out.d = take(total(p.size, out.places), out.boolean);
+    loops()(out.d, 0, [x.d ?? S, y.d ?? S, z.d ?? S], starts);
+  }, out);
+}
+
+/** Reads the numbers of a place as an array that runs along `places`: its own where it already does. */
+export function along(p, from, places) {
+  if (`${from.places}` === `${places}`) return () => from.d ?? p.S.subarray(from.k, from.k + 1);
+  const loops = perSizes(p, (size) => nest(size, KERNELS.copy, places, [from.places])), start = [Math.max(from.k, 0)];
+  return () => {
+    const out = array(total(p.size, places), from.boolean);
+    loops()(out, 0, [from.d ?? p.S], start);
+    return out;
+  };
+}
