@@ -9,8 +9,10 @@ from precontact_rules.sealing import field
 from precontact_service import create_app
 from precontact_service.door import FIELD_POLICY
 
-PAGE = {"index.html": "<!doctype html><title>x</title>", "worker.js": "self", "look.css": "b {}", "app.webmanifest": "{}", "mark.svg": "<svg/>", "sub/part.js": "export {}"}
-TYPES = {"html": "text/html", "js": "text/javascript", "css": "text/css", "webmanifest": "application/manifest+json", "svg": "image/svg+xml", "json": "application/json"}
+PAGE = {"index.html": "<!doctype html><title>x</title>", "worker.js": "self", "look.css": "b {}",
+        "app.webmanifest": "{}", "mark.svg": "<svg/>", "sub/part.js": "export {}"}
+TYPES = {"html": "text/html", "js": "text/javascript", "css": "text/css",
+         "webmanifest": "application/manifest+json", "svg": "image/svg+xml", "json": "application/json"}
 BECAUSE = {"en": "1.1.0 is stricter", "es": "1.1.0 es más estricta"}
 
 
@@ -49,19 +51,20 @@ def test_the_address_without_its_slash_leads_to_the_page(client):
     assert response.status_code == 308 and response.headers["Location"] == "/field/"
 
 
-@pytest.mark.parametrize("path", ["none.js", "../index.js", "%2e%2e/index.js", "runtime/none.js", "runtime/package.json", "rule-set/9.9.9.json", "rule-set/9.9.9.seal.json",
-                                  "rule-set/", "page/index.html"])
+@pytest.mark.parametrize("path", ["none.js", "../index.js", "%2e%2e/index.js", "runtime/none.js", "runtime/package.json",
+                                  "rule-set/9.9.9.json", "rule-set/9.9.9.seal.json", "rule-set/", "page/index.html"])
 def test_nothing_else_is_served(made_up, path):
     response = made_up.get(f"/field/{path}")
     assert response.status_code == 404 and response.content_type == "application/problem+json"
 
 
-def test_the_runtime_is_served_as_it_is_in_the_folder(client):
-    files = {name: path for name, path in field.page_files().items() if name.startswith("runtime/")}
+def test_the_runtime_is_served_as_it_is_in_the_folder():
+    files = {name: path.read_bytes() for name, path in field.page_files().items() if name.startswith("runtime/")}
+    client = create_app(access_log=False).test_client()          # made now: a service keeps what it read at its start
     assert files
-    for name, path in files.items():
+    for name, content in files.items():
         response = client.get(f"/field/{name}")
-        assert response.data == path.read_bytes() and response.mimetype == "text/javascript"
+        assert response.data == content and response.mimetype == "text/javascript"
 
 
 def test_the_policy_admits_its_own_files_alone():
@@ -107,7 +110,8 @@ def test_a_retired_rule_set_says_so_wherever_it_speaks(retired, question):
         assert response.headers.getlist("Deprecation") == ["@1796083200"]                         # RFC 9745
         assert response.headers.getlist("Sunset") == ["Tue, 01 Jun 2027 00:00:00 GMT"]             # RFC 8594
     said = {"deprecated": "2026-12-01", "sunset": "2027-06-01", "because": BECAUSE}
-    for shown in (retired.get(f"/v1/rule-sets/{version}").json, retired.get("/v1/rule-sets").json["rule_sets"][-1], retired.get("/field/rule-set/latest.json").json):
+    one, listed, latest = (retired.get(path).json for path in (f"/v1/rule-sets/{version}", "/v1/rule-sets", "/field/rule-set/latest.json"))
+    for shown in (one, listed["rule_sets"][-1], latest):
         assert {name: shown[name] for name in said} == said
     for path in ("/v1/rule-sets", "/", "/healthz", "/v1/checks"):
         assert "Deprecation" not in retired.get(path).headers, path

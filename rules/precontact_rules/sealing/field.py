@@ -59,7 +59,10 @@ def rule_set_files(ring, folder=released.FOLDER):
 
 
 def write(files, folder, keys=f"{RULE_SET_FOLDER}keys.json"):
-    """Write {relative address: bytes} under `folder` in this order, each file replaced whole; how many. `keys` names the key list among them. Raises PackFault."""
+    """Write {relative address: bytes} under `folder` in this order, each file replaced whole; how many. Raises PackFault.
+
+    `keys` is the address of the key list among them.
+    """
     _check_serial(folder / keys, files[keys])
     for name, content in files.items():
         path = folder / name

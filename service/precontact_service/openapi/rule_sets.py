@@ -3,7 +3,8 @@ from .operations import ETAG_HEADER, IF_NONE_MATCH, RETIREMENT_HEADERS, document
 from .schemas import RuleSet, RuleSetList, Seal
 
 _ETAG = {"ETag": ETAG_HEADER}
-_DIGEST = {"Repr-Digest": {"description": "SHA-256 of the bytes as they travel (RFC 9530): with `Content-Encoding: gzip`, of the compressed ones", "schema": {"type": "string"}}}
+_DIGEST = {"Repr-Digest": {"description": "SHA-256 of the bytes as they travel (RFC 9530): with `Content-Encoding: gzip`, of the compressed ones",
+                           "schema": {"type": "string"}}}
 
 
 def _name(editions):
@@ -33,7 +34,8 @@ def bundle(made, view, editions):
                                   "with `Content-Encoding: gzip`, a ninth as long, has its own of both. "
                                   "The cases inside let any runtime prove itself. `If-Match` is honoured.",
                       parameters=[_name(editions), IF_NONE_MATCH],
-                      responses={**found("The bundle", {"type": "object", "description": "Described in the rule language's own page"}, headers={**_ETAG, **_DIGEST, **RETIREMENT_HEADERS}),
+                      responses={**found("The bundle", {"type": "object", "description": "Described in the rule language's own page"},
+                                         headers={**_ETAG, **_DIGEST, **RETIREMENT_HEADERS}),
                                  **unchanged(), **problems(404, 412, 422)})
 
 
