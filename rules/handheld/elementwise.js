@@ -17,8 +17,10 @@ export const KERNELS = {
   sub: (out, o, n, a, ia, sa, b, ib, sb) => { for (const e = o + n; o < e; o++, ia += sa, ib += sb) out[o] = a[ia] - b[ib]; },
   mul: (out, o, n, a, ia, sa, b, ib, sb) => { for (const e = o + n; o < e; o++, ia += sa, ib += sb) out[o] = a[ia] * b[ib]; },
   div: (out, o, n, a, ia, sa, b, ib, sb) => { for (const e = o + n; o < e; o++, ia += sa, ib += sb) out[o] = a[ia] / b[ib]; },
+  lt: (out, o, n, a, ia, sa, b, ib, sb) => { for (const e = o + n; o < e; o++, ia += sa, ib += sb) out[o] = a[ia] < b[ib] ? 1 : 0; },
   le: (out, o, n, a, ia, sa, b, ib, sb) => { for (const e = o + n; o < e; o++, ia += sa, ib += sb) out[o] = a[ia] <= b[ib] ? 1 : 0; },
   gt: (out, o, n, a, ia, sa, b, ib, sb) => { for (const e = o + n; o < e; o++, ia += sa, ib += sb) out[o] = a[ia] > b[ib] ? 1 : 0; },
+  ge: (out, o, n, a, ia, sa, b, ib, sb) => { for (const e = o + n; o < e; o++, ia += sa, ib += sb) out[o] = a[ia] >= b[ib] ? 1 : 0; },
   and: (out, o, n, a, ia, sa, b, ib, sb) => { for (const e = o + n; o < e; o++, ia += sa, ib += sb) out[o] = a[ia] & b[ib]; },
   select: (out, o, n, a, ia, sa, b, ib, sb, c, ic, sc) => {
     for (const e = o + n; o < e; o++, ia += sa, ib += sb, ic += sc) out[o] = a[ia] ? b[ib] : c[ic];
@@ -35,8 +37,6 @@ export const KERNELS = {
   finite: one((a) => (a - a === 0 ? 1 : 0)),
   min: two((a, b) => (a < b || a !== a ? a : b)),
   max: two((a, b) => (a > b || a !== a ? a : b)),
-  lt: two((a, b) => (a < b ? 1 : 0)),
-  ge: two((a, b) => (a >= b ? 1 : 0)),
   eq: two((a, b) => (a === b ? 1 : 0)),
   ne: two((a, b) => (a !== b ? 1 : 0)),
   or: two((a, b) => a | b),

@@ -2,10 +2,9 @@
 import { POINTS } from "./points.js";
 
 export const TAIL = Math.floor(POINTS / 10);
-const BINS = 1024;
+const BINS = 1024, CROWD = 48;      // where more samples than that share a bin, sorting is quicker than inserting
 
-const counts = new Uint16Array(BINS + 1), bins = new Uint16Array(POINTS);
-let kept = new Float64Array(POINTS);
+const starts = new Uint16Array(BINS + 2), bins = new Uint16Array(POINTS), kept = new Float64Array(POINTS);
 
 /**
  * Fills `low` with the TAIL least samples in rising order and `high` with the TAIL greatest in falling order.
@@ -13,41 +12,65 @@ let kept = new Float64Array(POINTS);
  * @returns {boolean} false where a sample has no value or the range is not finite
  */
 export function tails(x, low, high) {
-  let least = Infinity, most = -Infinity, broken = 0;
+  let least = x[0], most = least;
   for (let i = 0; i < POINTS; i++) {
     const value = x[i];
     if (value < least) least = value;
-    if (value > most) most = value;
-    broken += value - value;
+    else if (value > most) most = value;
+    else if (value !== value) return false;
   }
-  if (broken !== 0 || !(most - least < Infinity)) return false;
+  if (!(most - least < Infinity)) return false;
   // Bins of equal width, in order: a sample's bin never falls as the sample rises.
   const scale = BINS / (most - least);
-  if (!(scale < Infinity)) return sorted(x, low, high);
-  counts.fill(0);
-  for (let i = 0; i < POINTS; i++) {
-    const bin = ((x[i] - least) * scale) | 0;
-    bins[i] = bin;
-    counts[bin]++;
+  let bottom = POINTS, top = POINTS;
+  if (scale < Infinity) [bottom, top] = binned(x, least, scale);
+  else kept.set(x);
+  if (bottom === POINTS) kept.sort();
+  for (let i = 0; i < TAIL; i++) {
+    low[i] = kept[i];
+    high[i] = kept[POINTS - 1 - i];
   }
-  let lowBin = 0, highBin = BINS, below = counts[0], above = counts[BINS];
-  while (below < TAIL) below += counts[++lowBin];
-  while (above < TAIL) above += counts[--highBin];
-  if (lowBin >= highBin) return sorted(x, low, high);
-  let bottom = 0, top = POINTS;
-  for (let i = 0; i < POINTS; i++) {
-    if (bins[i] <= lowBin) kept[bottom++] = x[i];
-    else if (bins[i] >= highBin) kept[--top] = x[i];
-  }
-  low.set(kept.subarray(0, bottom).sort().subarray(0, TAIL));
-  high.set(kept.subarray(top).sort().subarray(-TAIL).reverse());
   return true;
 }
 
-function sorted(x, low, high) {
-  kept.set(x);
-  kept.sort();
-  low.set(kept.subarray(0, TAIL));
-  high.set(kept.subarray(-TAIL).reverse());
-  return true;
+/** Leaves the bins that hold the outer samples in order at the two ends of `kept`, or all samples in any order; how many are below, where the rest begins. */
+function binned(x, least, scale) {
+  starts.fill(0);
+  for (let i = 0; i < POINTS; i++) {
+    const bin = ((x[i] - least) * scale) | 0;
+    bins[i] = bin;
+    starts[bin + 1]++;
+  }
+  let lowBin = 0, highBin = BINS, below = starts[1], above = starts[BINS + 1], crowd = Math.max(below, above);
+  while (below < TAIL) {
+    below += starts[++lowBin + 1];
+    crowd = Math.max(crowd, starts[lowBin + 1]);
+  }
+  while (above < TAIL) {
+    above += starts[highBin--];
+    crowd = Math.max(crowd, starts[highBin + 1]);
+  }
+  if (lowBin >= highBin) {
+    kept.set(x);
+    return [POINTS, POINTS];
+  }
+  for (let bin = 1; bin <= BINS; bin++) starts[bin] += starts[bin - 1];
+  for (let i = 0; i < POINTS; i++) {
+    const bin = bins[i];
+    if (bin <= lowBin || bin >= highBin) kept[starts[bin]++] = x[i];
+  }
+  for (const [from, to] of [[0, below], [POINTS - above, POINTS]]) {
+    if (crowd > CROWD) kept.subarray(from, to).sort();
+    else inserted(from, to);
+  }
+  return [below, POINTS - above];
+}
+
+function inserted(from, to) {
+  for (let i = from + 1; i < to; i++) {
+    const value = kept[i];
+    let k = i;
+    for (; k > from && kept[k - 1] > value; k--) kept[k] = kept[k - 1];
+    kept[k] = value;
+  }
 }
