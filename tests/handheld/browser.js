@@ -9,10 +9,10 @@ const HARNESS = dirname(fileURLToPath(import.meta.url));
 const { chromium } = createRequire(join(HARNESS, "tools", "package.json"))("playwright-core");
 const TYPES = { ".js": "text/javascript", ".json": "application/json", ".html": "text/html" };
 /** No inline script, no eval, no text that becomes code, nothing from elsewhere. */
-export const POLICY = "default-src 'none'; script-src 'self'; connect-src 'self'; base-uri 'none'; form-action 'none'; require-trusted-types-for 'script'";
+const POLICY = "default-src 'none'; script-src 'self'; connect-src 'self'; base-uri 'none'; form-action 'none'; require-trusted-types-for 'script'";
 
-/** Serve /runtime/ and /harness/ from folders, and what `answers` has: {path: (request body) => text or bytes}. @returns {Promise<{origin, close}>} */
-export async function served(runtimeFolder, answers) {
+/** Serve /runtime/ and /harness/ from folders, and what `answers` has: {path: (request body, rest of the path) => text or bytes}. */
+async function served(runtimeFolder, answers) {
   const folders = { runtime: runtimeFolder, harness: HARNESS };
   const server = createServer(async (request, response) => {
     const { pathname } = new URL(request.url, "http://localhost"), [, first, ...rest] = pathname.split("/");
@@ -21,18 +21,23 @@ export async function served(runtimeFolder, answers) {
       for await (const part of request) body += part;
       const made = answers[pathname] ?? answers[`/${first}/`];
       const content = made ? await made(body, rest.join("/")) : await readFile(join(folders[first], normalize(rest.join("/"))));
-      response.writeHead(200, { "Content-Type": TYPES[extname(pathname)] ?? "application/octet-stream", "Content-Security-Policy": POLICY, "Cache-Control": "no-store" });
+      const type = TYPES[extname(pathname)] ?? "application/octet-stream";
+      response.writeHead(200, { "Content-Type": type, "Content-Security-Policy": POLICY, "Cache-Control": "no-store" });
       response.end(content);
     } catch (error) {
       response.writeHead(404).end(String(error));
     }
   });
   await new Promise((ready) => server.listen(0, "127.0.0.1", ready));
-  return { origin: `http://localhost:${server.address().port}`, close: () => new Promise((done) => { server.close(done); server.closeAllConnections(); }) };
+  const close = () => new Promise((done) => {
+    server.close(done);
+    server.closeAllConnections();
+  });
+  return { origin: `http://localhost:${server.address().port}`, close };
 }
 
-/** Open a page that runs one module; resolves to what the module posts to /report. `prepare(page)` comes before. */
-export async function reported(browserPath, runtimeFolder, module, answers, prepare = async () => {}) {
+/** Open a page that runs one module of this folder; resolves to what the module posts to /report. `prepare(page)` comes before. */
+export async function reported(browserPath, runtimeFolder, module, answers = {}, prepare = async () => {}) {
   let arrived, failed;
   const report = new Promise((resolve, reject) => { arrived = resolve; failed = reject; });
   const site = await served(runtimeFolder, {
@@ -45,7 +50,9 @@ export async function reported(browserPath, runtimeFolder, module, answers, prep
     const page = await browser.newPage();
     page.on("pageerror", (error) => failed(error));
     page.on("requestfailed", (request) => failed(new Error(`${request.url()} ${request.failure().errorText}`)));
-    page.on("response", (response) => { if (!response.ok() && !response.url().endsWith("/favicon.ico")) failed(new Error(`${response.status()} ${response.url()}`)); });
+    page.on("response", (response) => {
+      if (!response.ok() && !response.url().endsWith("/favicon.ico")) failed(new Error(`${response.status()} ${response.url()}`));
+    });
     page.on("crash", () => failed(new Error("the page crashed")));
     await prepare(page);
     await page.goto(`${site.origin}/index.html`);

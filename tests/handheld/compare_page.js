@@ -1,9 +1,11 @@
-/** Runs in the browser: fetches the questions piece by piece, compares, and posts the report. Nothing here may need more than a strict policy allows. */
+/** Runs in the browser: fetches the questions piece by piece, compares, and posts the report. It must get by with a strict policy. */
 import * as runtime from "/runtime/index.js";
 import { Comparison } from "/harness/compare.js";
 
 const violations = [];
-document.addEventListener("securitypolicyviolation", (event) => violations.push(`${event.violatedDirective} ${event.blockedURI} ${event.sourceFile}`));
+document.addEventListener("securitypolicyviolation", ({ violatedDirective, blockedURI, sourceFile }) => {
+  violations.push(`${violatedDirective} ${blockedURI} ${sourceFile}`);
+});
 
 async function sha256(text) {
   const bytes = new Uint8Array(await crypto.subtle.digest("SHA-256", new TextEncoder().encode(text)));

@@ -56,7 +56,7 @@ class Drawing:
                     self.seen.setdefault(key, []).append(stated(item))
 
     def value(self, field, used, near=None):
-        """A plain number for the field: most of them plausible, `near` another one, some of them on an edge. `used` are numbers of this question by unit."""
+        """A plain number for the field: most of them plausible, or `near` another one; some on an edge. `used`: numbers of this question by unit."""
         rng, (low, high) = self.rng, bounds(field)
         seen = self.seen.get(field["key"])
         dice = rng.random()

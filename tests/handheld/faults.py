@@ -7,10 +7,11 @@ from .drawing import bounds
 STRANGE = (True, False, "12", "", [], {}, [1, 2], {"a": 1}, {"value": 1}, 3, -1, 0.5, 1e-7, 1.5e300, math.inf, -math.inf, 10 ** 20, 1e22,
            "Ω" * 70, ["long"] * 20, {"value": 5, "half_width": 1})
 UNKNOWN_KEYS = ("volts", "voltage", "", "a/b", "m~n", "id", "value", "Ñ", "𝒜", "toString", "__proto__", "constructor")
-BAD_SPREADS = ({"value": 1}, {"half_width": 1}, {"value": 1, "half_width": 1, "half_width_percent": 1}, {"value": 1, "half_width": -1}, {"between": [1]},
-               {"between": [1, "2"]}, {"between": [1, 2], "value": 1}, {"between": {"low": 1}}, {"value": None, "half_width": 1}, {"value": 1, "sigma": 2},
-               {"value": "1", "half_width": 1}, {"value": 1e300, "half_width": 1}, {"value": 1, "standard_uncertainty": 1e300}, {"between": [-1e9, 1e18]},
-               {"value": 1, "half_width": True}, {"between": [1, 2], "half_width": 1}, {"value": math.inf, "half_width": 1}, {"value": 1, "a/b~": 2}, {})
+BAD_SPREADS = (
+    {}, {"value": 1}, {"half_width": 1}, {"value": 1, "half_width": 1, "half_width_percent": 1}, {"value": 1, "half_width": -1}, {"between": [1]},
+    {"between": [1, "2"]}, {"between": [1, 2], "value": 1}, {"between": {"low": 1}}, {"value": None, "half_width": 1}, {"value": 1, "sigma": 2},
+    {"value": "1", "half_width": 1}, {"value": 1e300, "half_width": 1}, {"value": 1, "standard_uncertainty": 1e300}, {"between": [-1e9, 1e18]},
+    {"value": 1, "half_width": True}, {"between": [1, 2], "half_width": 1}, {"value": math.inf, "half_width": 1}, {"value": 1, "a/b~": 2})
 BAD_TEXTS = ("x" * 61, "two\nlines", "tab\t", "\u00a0", "\u200b", "𝒜" * 61, "bell\x07", "\ue000", "line\u2028", "\u00ad", 5, ["a"], {"a": "b"}, True)
 BAD_CURVES = ([], [[1]], [[1, 2], [3]], [[1, "2"]], "curve", {"x": 1}, [[1, 2, 3]], [[True, 1]], [[1e17, 1]], [[i, i] for i in range(65)], [1, 2])
 
@@ -81,5 +82,5 @@ def _wrong(field, rng):
     if kind == "curve":
         return rng.choice(BAD_CURVES)
     low, high = bounds(field)
-    beyond = [math.nextafter(low, -math.inf), math.nextafter(high, math.inf), -high, high * 10, -1, -1e-7, 2 ** 53 + 2, -2 ** 60, math.inf, "5", "1 V", []]
+    beyond = [math.nextafter(low, -math.inf), math.nextafter(high, math.inf), -high, high * 10, -1, -1e-7, 2 ** 53 + 2, -2 ** 60, math.inf, "5", []]
     return copy.deepcopy(rng.choice(BAD_SPREADS) if rng.random() < 0.5 else rng.choice(beyond))

@@ -1,4 +1,4 @@
-/** node primitives_node.js RUNTIME FOLDER: reads doubles that Python wrote, computes with the runtime's own functions, prints where the bits differ as JSON. */
+/** node primitives_node.js RUNTIME FOLDER: reads doubles that Python wrote, computes with the runtime, prints where bits differ as JSON. */
 import { readFileSync } from "node:fs";
 import { dirname, join } from "node:path";
 import { pathToFileURL } from "node:url";
@@ -14,7 +14,12 @@ function doubles(name) {
   return new Float64Array(bytes.buffer.slice(bytes.byteOffset, bytes.byteOffset + bytes.length));
 }
 
-const hex = (x) => { const view = new DataView(new ArrayBuffer(8)); view.setFloat64(0, x); return view.getBigUint64(0).toString(16).padStart(16, "0"); };
+function hex(x) {
+  const view = new DataView(new ArrayBuffer(8));
+  view.setFloat64(0, x);
+  return view.getBigUint64(0).toString(16).padStart(16, "0");
+}
+
 const report = {};
 
 /** `same` is Object.is: every NaN is one value, but 0 and -0 are two. */
@@ -50,12 +55,15 @@ const equal = (a, b) => a === b || (a !== a && b !== b);
 const { components, cases } = JSON.parse(readFileSync(join(folder, "cases.json")));
 const points = new PointSet(components), samples = doubles("samples.x");
 const rows = cases.map((_, k) => samples.subarray(k * POINTS, (k + 1) * POINTS));
-compare("ends", cases.flatMap(({ forms }, k) => coverageEnds(rows[k], points.drawn(forms))), doubles("ends.y"), (i) => JSON.stringify(cases[i >> 1]), equal);
-compare("even ends", cases.flatMap((_, k) => evenEnds(rows[k])), doubles("even.y"), (i) => JSON.stringify(cases[i >> 1]), equal);
+const caseOf = (i) => JSON.stringify(cases[i >> 1]);
+compare("ends", cases.flatMap(({ forms }, k) => coverageEnds(rows[k], points.drawn(forms))), doubles("ends.y"), caseOf, equal);
+compare("even ends", cases.flatMap((_, k) => evenEnds(rows[k])), doubles("even.y"), caseOf, equal);
 compare("share", cases.flatMap(({ forms }, k) => {
   const holds = (test) => Uint8Array.from(rows[k], (v) => (test(v) ? 1 : 0)), drawn = points.drawn(forms);
   return [share(holds((v) => v > 0), rows[k], true, drawn), share(holds((v) => v < 0), rows[k], false, drawn)];
-}), doubles("share.y"), (i) => JSON.stringify(cases[i >> 1]));
+}), doubles("share.y"), caseOf);
 const across = components.map((_, d) => d);
-for (const form of "urn") compare(`coordinates ${form}`, across.flatMap((d) => Array.from(points.coordinates(form, d))), doubles(`coordinates.${form}`));
+for (const form of "urn") {
+  compare(`coordinates ${form}`, across.flatMap((d) => Array.from(points.coordinates(form, d))), doubles(`coordinates.${form}`));
+}
 console.log(JSON.stringify(report));

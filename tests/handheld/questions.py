@@ -12,7 +12,7 @@ from .drawing import Drawing, stated
 from .faults import faulty
 
 ALIKE = 5               # questions of one shape
-DIMENSIONS = 60         # so many uncertain numbers a question has at most
+DIMENSIONS = 60         # so many uncertain numbers a question has at most: the lattice has 64
 
 
 class Dials(NamedTuple):
@@ -95,7 +95,9 @@ class Asker:
             return self.draw.spread(field, given)
         if given is not None and rng.random() >= self.dials.change:
             return copy.copy(given)
-        made = self.draw.number(field, self.used, self.dials.spread if self.left else 0, given if self.left or not isinstance(given, dict) else stated(given))
+        if not self.left and given is not None:
+            given = stated(given)
+        made = self.draw.number(field, self.used, self.dials.spread if self.left else 0, given)
         self.left -= isinstance(made, dict)
         return made
 
@@ -186,7 +188,7 @@ def cases(bundle):
 
 
 def written(body):
-    """The JSON text of a body that both runtimes read. Whole numbers are written as such: a JavaScript object does not remember whether it was 12 or 12.0."""
+    """The JSON text of a body that both runtimes read. Whole numbers are written as such: JavaScript does not remember whether one was 12 or 12.0."""
     return json.dumps(_as_ecmascript(body), ensure_ascii=False, separators=(",", ":")).replace("Infinity", "1e400")
 
 

@@ -1,4 +1,4 @@
-"""The arithmetic under both runtimes, number by number: exp, ln, sin, cos, the normal score, sums and shares have the same bits, interval ends the same values."""
+"""The arithmetic of both runtimes, number by number: exp, ln, sin, cos, the normal score, sums, shares and interval ends are the same."""
 import json
 import math
 
@@ -12,7 +12,7 @@ from precontact_rules.points import POINTS
 from .conftest import RUNTIME
 
 COUNT = 200_000
-SPECIAL = [0.0, -0.0, math.inf, -math.inf, math.nan, 5e-324, -5e-324, 2.2250738585072014e-308, 2.225073858507201e-308, 1.7976931348623157e308, 1.0, -1.0]
+SPECIAL = [0.0, -0.0, 1.0, -1.0, math.inf, -math.inf, math.nan, 5e-324, -5e-324, 2.2250738585072014e-308, 2.225073858507201e-308, 1.797e308]
 FORMS = ("r", "n", "rr", "rn", "nn", "rrr", "rnrnr", "nnnnnn", "r" * 12, "rn" * 10, "n" * 33)
 
 
@@ -41,16 +41,16 @@ def subnormal(rng, count):
 def asked(name, rng):
     """COUNT or more arguments for a function, where it is used and where it breaks."""
     if name == "exp":
-        edges = about([k * exact_math.LN2_HIGH for k in range(-1080, 1030)] + [(k + 0.5) * exact_math.LN2_HIGH for k in range(-1080, 1030)] + [-800, 800, -745.1, 709.78])
+        edges = about([k * exact_math.LN2_HIGH / 2 for k in range(-2160, 2060)] + [-800, 800, -745.1, 709.78])
         parts = [rng.uniform(-750, 715, COUNT // 2), rng.uniform(-748, -705, COUNT // 10), rng.normal(0, 1, COUNT // 4)]
     elif name == "ln":
         edges = about([2.0 ** k for k in range(-1074, 1024)] + [2.0 ** k * exact_math.SQRT_HALF for k in range(-1022, 1024)])
         parts = [np.exp(rng.uniform(-740, 709, COUNT // 2)), np.abs(subnormal(rng, COUNT // 10)), rng.uniform(0.5, 2, COUNT // 4)]
     elif name in ("sin", "cos"):
-        edges = about([k * math.pi / 4 for k in range(-4000, 4000)] + [k * math.pi / 2 for k in range(660_000, 667_544, 7)] + [2.0 ** 20, -2.0 ** 20])
+        edges = about([k * math.pi / 4 for k in (*range(-4000, 4000), *range(1_320_000, 1_335_088, 14))] + [2.0 ** 20, -2.0 ** 20])
         parts = [rng.uniform(-50, 50, COUNT // 2), rng.uniform(-1.1 * 2 ** 20, 1.1 * 2 ** 20, COUNT // 4), 10.0 ** rng.uniform(-320, 0, COUNT // 10)]
     else:
-        edges = [p for p in about([0.075, 0.925, 0.5, math.exp(-25), 1 - math.exp(-25), 0.025, 0.975]) + [5e-324, 1e-310, 1e-300, math.nextafter(1, 0)]]
+        edges = [*about([0.075, 0.925, 0.5, math.exp(-25), 1 - math.exp(-25), 0.025, 0.975]), 5e-324, 1e-310, 1e-300, math.nextafter(1, 0)]
         near_one = 1 - 10.0 ** rng.uniform(-15.9, -0.3, COUNT // 5)
         parts = [rng.uniform(1e-12, 1 - 1e-12, COUNT // 2), 10.0 ** rng.uniform(-320, -0.3, COUNT // 3), near_one, (np.arange(4096) + 0.5) / 4096]
         return np.concatenate([np.array([p for p in edges if 0 < p < 1]), *[p[(p > 0) & (p < 1)] for p in parts]])
@@ -66,7 +66,7 @@ def compared(tmp_path_factory, run_script, released_set):
         x = asked(name, rng)
         write(f"{name}.x", x)
         write(f"{name}.y", list(map(getattr(exact_math, name), x.tolist())))
-    lengths = [*range(200), *([4096] * 20), *rng.integers(1, 2000, 100).tolist(), *([3] * 1000), *([5, 7, 12] * 700), *([32] * 400), *rng.integers(2, 60, 200_000 - 4120).tolist()]
+    lengths = [*range(200), *([4096] * 20), *rng.integers(1, 2000, 100).tolist(), *rng.integers(2, 60, COUNT).tolist()]
     terms = [rng.normal(0, 1, n) * 10.0 ** rng.uniform(-8, 8, n) for n in lengths]
     terms[50][3], terms[60][5], terms[61][4] = math.nan, math.inf, -math.inf
     write("fold_sum.n", lengths)
@@ -80,9 +80,10 @@ def samples(rule_set, rng, folder, write):
     """Functions of the points, smooth, kinked, stepped, constant, huge, tiny and with holes; their ends and shares as Python has them."""
     points, cases, rows, ends, even, shares = rule_set.points, [], [], [], [], []
     shapes = {
-        "linear": lambda s: s, "curved": lambda s: s + 0.3 * s * s, "exponential": exact_math.exp_array, "kinked": np.abs, "stepped": lambda s: np.floor(s * 2) / 2,
-        "huge": lambda s: s * 1e300, "beyond": lambda s: s * 1.7e308, "tiny": lambda s: s * 5e-324, "subnormal": lambda s: s * 1e-310, "constant": lambda s: s * 0 + 2.5,
-        "zero": lambda s: s * 0.0, "holes": lambda s: np.where(s > 1, math.nan, s), "infinite": lambda s: np.where(s > 1, math.inf, s), "inverse": lambda s: 1 / (s + 3),
+        "linear": lambda s: s, "curved": lambda s: s + 0.3 * s * s, "exponential": exact_math.exp_array, "inverse": lambda s: 1 / (s + 3),
+        "kinked": np.abs, "stepped": lambda s: np.floor(s * 2) / 2, "constant": lambda s: s * 0 + 2.5, "zero": lambda s: s * 0.0,
+        "huge": lambda s: s * 1e300, "beyond": lambda s: s * 1.7e308, "tiny": lambda s: s * 5e-324, "subnormal": lambda s: s * 1e-310,
+        "holes": lambda s: np.where(s > 1, math.nan, s), "infinite": lambda s: np.where(s > 1, math.inf, s),
     }
     for forms in FORMS:
         drawn = points.drawn(forms)
@@ -106,9 +107,10 @@ def samples(rule_set, rng, folder, write):
         write(f"coordinates.{form}", np.concatenate([coordinates(d) for d in range(points.dimensions)]))
 
 
-@pytest.mark.parametrize("name, least", [
-    ("exp", COUNT), ("ln", COUNT), ("sin", COUNT), ("cos", COUNT), ("normal_score", COUNT), ("fold_sum", COUNT - 1000), ("fold_sum of a copy", COUNT - 1000),
-    ("ends", 600), ("even ends", 600), ("share", 600), ("coordinates u", COUNT), ("coordinates r", COUNT), ("coordinates n", COUNT)])
+NUMBERS = ("exp", "ln", "sin", "cos", "normal_score", "fold_sum", "fold_sum of a copy", "coordinates u", "coordinates r", "coordinates n")
+
+
+@pytest.mark.parametrize("name, least", [*((name, COUNT) for name in NUMBERS), ("ends", 600), ("even ends", 600), ("share", 600)])
 def test_the_same_bits(compared, name, least):
     found = compared[name]
     assert found["count"] >= least
