@@ -1,0 +1,80 @@
+/** Where a Keeper keeps its bytes: names to bytes, each put whole or not at all. A store for Node is in file-store.js. */
+
+/** Kept in memory: for tests, and where nothing may stay on the device. */
+export class MemoryStore {
+  #entries = new Map();
+
+  async get(name) {
+    return this.#entries.get(name)?.slice();
+  }
+
+  async put(name, bytes) {
+    this.#entries.set(name, bytes.slice());
+  }
+
+  async remove(name) {
+    this.#entries.delete(name);
+  }
+
+  async names() {
+    return [...this.#entries.keys()];
+  }
+}
+
+/** Kept in a browser's IndexedDB; a put is done when its transaction has reached the disk. */
+export class IndexedDbStore {
+  #database;
+  #name;
+
+  /** @param {string} [name] of the database, which belongs to this store alone */
+  constructor(name = "precontact-rule-sets") {
+    this.#name = name;
+  }
+
+  get(name) {
+    return this.#run("readonly", (entries) => entries.get(name));
+  }
+
+  put(name, bytes) {
+    return this.#run("readwrite", (entries) => entries.put(bytes, name));
+  }
+
+  remove(name) {
+    return this.#run("readwrite", (entries) => entries.delete(name));
+  }
+
+  names() {
+    return this.#run("readonly", (entries) => entries.getAllKeys());
+  }
+
+  #opened() {
+    return (this.#database ??= new Promise((resolve, reject) => {
+      const request = indexedDB.open(this.#name, 1);
+      request.onupgradeneeded = () => request.result.createObjectStore("entries");
+      request.onerror = () => reject(request.error);
+      request.onsuccess = () => {
+        const database = request.result;
+        database.onclose = () => (this.#database = undefined);
+        database.onversionchange = () => {      // another page may delete it
+          database.close();
+          this.#database = undefined;
+        };
+        resolve(database);
+      };
+    }).catch((error) => {
+      this.#database = undefined;     // the next call tries again
+      throw error;
+    }));
+  }
+
+  async #run(mode, work) {
+    const database = await this.#opened();
+    return new Promise((resolve, reject) => {
+      const transaction = database.transaction("entries", mode, { durability: "strict" });
+      let request;
+      transaction.oncomplete = () => resolve(request.result);
+      transaction.onabort = () => reject(transaction.error ?? request?.error);
+      request = work(transaction.objectStore("entries"));
+    });
+  }
+}
