@@ -1,20 +1,20 @@
 /** What the engine needs to know of one check of one rule set: formulas, axes, columns, constants, look-ups. */
-import { Check } from "./declaration.js";
+import { declaredInputs } from "./declaration.js";
 import { lookup } from "./lookup.js";
-import { Template } from "./phrase.js";
+import { namesIn } from "./phrase.js";
 
 const UNVERIFIED = ["practice", "informal", "memory"];
 const own = (record, key) => (record && Object.hasOwn(record, key) ? record[key] : undefined);
 
 /** One check, read from the bundle once: what a graph or an answer asks for by name. */
 export function modelOf(bundle, name) {
-  const declared = bundle.checks[name], { formulas, axes, findings } = declared, { slots } = new Check(bundle, name);
+  const declared = bundle.checks[name], { formulas, axes, findings } = declared, { slots } = declaredInputs(bundle, name);
   return {
     bundle, name, declared, formulas, axes, findings, slots,
     slotIndex: new Map(slots.map((slot, index) => [slot.path, index])),
     formulaNamed: new Map(formulas.map((f) => [f.name, f])),
     axisNamed: new Map(axes.map((a) => [a.name, a])),
-    mentioned: new Set(findings.flatMap((f) => Object.values(f.sentence).flatMap((text) => new Template(text).names()))),
+    mentioned: new Set(findings.flatMap((f) => Object.values(f.sentence).flatMap(namesIn))),
     memo: new Map(),
   };
 }
@@ -106,18 +106,3 @@ export function lookupOf({ bundle, slots }, [source, name, column]) {
 
 /** Whether a number of this origin may not make this check's verdict milder. */
 export const isWeak = ({ name }, { standing, cautious_in }) => UNVERIFIED.includes(standing) && own(cautious_in, name) === undefined;
-
-/** The same as an object with methods. */
-export class CheckModel {
-  constructor(bundle, name) {
-    Object.assign(this, modelOf(bundle, name));
-  }
-  constant(name) { return constant(this, name); }
-  entryIds(axis) { return entries(this, axis).map(([id]) => id); }
-  entryTitle(axis, place) { return entries(this, axis)[place][1].title; }
-  axisFrom(axis) { return axisFrom(this, axis); }
-  axisSize(axis) { return axisSize(this, axis); }
-  applicable(states) { return applicable(this, states); }
-  inputsOf(name) { return inputsOf(this, name); }
-  isWeak(origin) { return isWeak(this, origin); }
-}

@@ -1,11 +1,10 @@
 /** A rule set that answers: bundle in, request in, answer out. */
-import { AnswerWriter } from "./answer.js";
-import { digest } from "./canonical.js";
+import { answerWriter } from "./answer.js";
+import { digest, digestOf } from "./canonical.js";
 import { compileIntake } from "./intake.js";
-import { CheckModel } from "./model.js";
+import { modelOf } from "./model.js";
 import { Plan } from "./plan.js";
 import { POINTS, PointSet, SCORE_LIMIT } from "./points.js";
-import { sha256 } from "./sha256.js";
 
 export const LANGUAGE = 1;      // the rule-language version this engine speaks
 const PLANS_KEPT = 512;         // compiled signatures kept per check; the oldest goes first
@@ -22,14 +21,13 @@ export class UnknownCheck extends Error {}
 export class CheckBlocked extends Error {}
 
 const isSpread = (value) => value !== null && typeof value === "object";
-const hex = (bytes) => Array.from(bytes, (b) => b.toString(16).padStart(2, "0")).join("");
 
 /** One check of one rule set: validates, samples, runs, and hands the numbers to the answer writer. */
 class Question {
   constructor(ruleSet, name) {
-    this.model = new CheckModel(ruleSet.data, name);
+    this.model = modelOf(ruleSet.data, name);
     this.intake = compileIntake(ruleSet.data, name);
-    this.writer = new AnswerWriter(ruleSet, this.model);
+    this.write = answerWriter(ruleSet, this.model);
     this.points = ruleSet.points;
     this.plans = new Map();
     this.ranges = this.model.slots.map((slot) => range(slot, ruleSet.data.units));
@@ -60,7 +58,7 @@ class Question {
       intervals = plan.intervals(results, drawn);
       beyond = outside;
     }
-    return this.writer.write(intake, plan, results, intervals, beyond, digest(body), language);
+    return this.write(intake, plan, results, intervals, beyond, digest(body), language);
   }
 
   /** Best estimates, sampled arrays, forms of the dimensions used, slots beyond their range; dimensions are handed out in slot order, then item order. */
@@ -118,7 +116,7 @@ export class RuleSet {
   /** @param {Uint8Array} bytes the exact bytes of a bundle @param {string} [known] their digest, where it was found already */
   constructor(bytes, known) {
     this.bytes = bytes;
-    this.digest = known ?? `sha-256:${hex(sha256(bytes))}`;
+    this.digest = known ?? digestOf(bytes);
     this.data = JSON.parse(new TextDecoder("utf-8", { fatal: true }).decode(bytes));
     if (this.data.language !== LANGUAGE) {
       throw new UnknownLanguage(`this bundle is written in rule language ${this.data.language}; this engine speaks ${LANGUAGE}`);

@@ -1,0 +1,29 @@
+/** What is wrong with a request, item by item. */
+import { canonicalText } from "./canonical.js";
+
+const LONGEST = 60, DEEPEST = 32;
+
+/** A request body that cannot be answered; `problems` lists every fault found: {pointer, code, detail}. */
+export class InputProblems extends Error {
+  /** @param {{pointer: string, code: string, detail: string}[]} problems */
+  constructor(problems) {
+    super(problems.map((p) => `${p.pointer || "/"}: ${p.detail}`).join("; "));
+    this.name = "InputProblems";
+    this.problems = problems;
+  }
+}
+
+export const problem = (pointer, code, detail) => ({ pointer, code, detail });
+
+export const isObject = (value) => typeof value === "object" && value !== null && !Array.isArray(value);
+export const escaped = (key) => key.replaceAll("~", "~0").replaceAll("/", "~1");
+
+const held = (value, depth = 0) => (typeof value === "number" ? value - value === 0 : typeof value !== "object" || value === null
+  || (depth < DEEPEST && Object.values(value).every((v) => held(v, depth + 1))));
+
+/** A value as it is quoted in a message: canonical JSON, shortened; what JSON cannot hold, or holds too deep, is not written out. */
+export function shown(value) {
+  if (!held(value)) return "a value that cannot be written here";
+  const letters = [...canonicalText(value)];
+  return letters.length <= LONGEST ? letters.join("") : `${letters.slice(0, LONGEST - 1).join("")}…`;
+}
