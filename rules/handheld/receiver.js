@@ -1,113 +1,82 @@
 /** What a Keeper receives: small documents and bundles of a rule-set/ folder, each read to a limit, and the bytes counted. */
-import { BundleRefused } from "./trust.js";
+import { BundleRefused, shown } from "./trust.js";
 
-const MOST_DOCUMENT_BYTES = 1 << 16, MOST_BUNDLE_BYTES = 1 << 26;
+const MOST_DOCUMENT_BYTES = 1 << 16, DATE = /^\d{4}-\d\d-\d\d$/, FILE = /^[\w-][\w.-]*\.json$/;
+const ANNOUNCED = { version: /^\d+\.\d+\.\d+$/, digest: /^sha-256:[0-9a-f]{64}$/, bytes: /^[1-9]\d{0,7}$/, bundle: FILE, seal: FILE };
 
-const unreadable = (name, detail) => new BundleRefused("unreadable", `${name} ${detail}; is this the address of a rule-set/ folder?`);
+/** Functions that read from one folder, and what they count together. */
+export function receiver(base, fetch, signal) {
+  const counted = { bytes: 0 };
 
-/** Reads from one folder. */
-export class Receiver {
-  #base;
-  #fetch;
-  #signal;
-
-  constructor(base, fetch, signal) {
-    this.#base = base.endsWith("/") ? base : `${base}/`;
-    this.#fetch = fetch;
-    this.#signal = signal;
-    this.bytes = 0;
-  }
-
-  /** The same, with a count of its own. */
-  counting(signal) {
-    return new Receiver(this.#base, this.#fetch, signal);
-  }
-
-  /** What latest.json says. It is not sealed: the bundle must bear it out. */
-  async latest() {
-    const name = "latest.json", bytes = await this.bytesOf(name);
-    let data;
-    try {
-      data = JSON.parse(new TextDecoder().decode(bytes));
-    } catch (error) {
-      throw unreadable(name, `is not JSON: ${error.message}`);
-    }
-    const right = { version: /^\d+\.\d+\.\d+$/, digest: /^sha-256:[0-9a-f]{64}$/, bundle: /^\w[\w.-]*$/, seal: /^\w[\w.-]*$/ };
-    for (const [member, pattern] of Object.entries(right)) {
-      const value = data?.[member];
-      if (typeof value !== "string" || !pattern.test(value)) throw unreadable(name, `has ${member} ${JSON.stringify(value)?.slice(0, 80)}`);
-    }
-    if (!(Number.isSafeInteger(data.bytes) && data.bytes > 0 && data.bytes <= MOST_BUNDLE_BYTES)) {
-      throw unreadable(name, `has bytes ${JSON.stringify(data.bytes)}; a whole number from 1 to ${MOST_BUNDLE_BYTES} is right`);
-    }
-    return { ...data, notice: noticeOf(data) };
-  }
-
-  /** A small file, whole. */
-  async bytesOf(name) {
-    return this.#body(name, await this.#answer(name));
-  }
-
-  /** The text of a seal. */
-  async seal(name) {
-    const response = await this.#answer(name, {}, [404]);
-    if (response.status === 404) throw new BundleRefused("unsigned", `there is no seal ${name}; bytes that nobody vouches for are not used`);
-    return new TextDecoder().decode(await this.#body(name, response));
-  }
-
-  /** The bundle that was announced, or null where the server says that it is the one of this digest. */
-  async bundle({ bundle, bytes, digest }, held) {
-    const response = await this.#answer(bundle, held ? { "If-None-Match": `"${held}"` } : {}, [304]);
-    if (response.status === 304) return null;
-    const found = await this.#body(bundle, response, bytes);
-    if (found.length < bytes) throw new BundleRefused("truncated", `${found.length} of ${bytes} bytes of ${bundle} (${digest}) arrived; try again`);
-    return found;
-  }
-
-  async #answer(name, headers = {}, others = []) {
-    const fetch = this.#fetch;      // a browser's own is not to be called as a method
+  async function answered(name, headers, also) {
     let response;
     try {
-      response = await fetch(this.#base + name, { headers, cache: "no-cache", signal: this.#signal });
+      response = await fetch(`${base}/${name}`, { headers, cache: "no-cache", signal });
     } catch (error) {
-      throw new BundleRefused("unreachable", `${name} could not be asked for: ${error.message}`);
+      throw new BundleRefused("unreachable", `${name} could not be fetched: ${error.message}`);
     }
     const { ok, status } = response;
-    if (!ok && !others.includes(status)) throw new BundleRefused("unreachable", `the server answered ${status} for ${name}`);
+    if (!ok && status !== also) throw new BundleRefused("unreachable", `the server answered ${status} for ${name}`);
     return response;
   }
 
-  /** The bytes of an answer, no more than `most`. One that breaks off is handed back as far as it came where the caller knows its length. */
-  async #body(name, response, most) {
-    const limit = most ?? MOST_DOCUMENT_BYTES, parts = [], reader = response.body?.getReader?.();
+  /** The bytes of an answer, no more than `most`; a bundle that breaks off is handed back as far as it came. */
+  async function bytesOf(response, name, most) {
+    const reader = response.body?.getReader(), whole = new Uint8Array(most);
     let length = 0;
     const take = (part) => {
-      parts.push(part);
+      counted.bytes += part.length;
+      if (length + part.length > most) throw new BundleRefused("too-long", `${name} is longer than ${most} bytes`);
+      whole.set(part, length);
       length += part.length;
-      this.bytes += part.length;
-      if (length > limit) throw new BundleRefused("too-long", `${name} is longer than ${limit} bytes`);
     };
     try {
       if (!reader) take(new Uint8Array(await response.arrayBuffer()));        // engines that hand over no stream
       else for (let next; !(next = await reader.read()).done; ) take(next.value);
     } catch (error) {
       reader?.cancel().catch(() => {});
-      if (error instanceof BundleRefused) throw error;
-      if (most === undefined) throw new BundleRefused("unreachable", `${name} broke off after ${length} bytes: ${error.message}`);
+      if (error.detail) throw error;
+      if (most === MOST_DOCUMENT_BYTES) throw new BundleRefused("unreachable", `${name} broke off: ${error.message}`);
     }
-    const whole = new Uint8Array(length);
-    let at = 0;
-    for (const part of parts) {
-      whole.set(part, at);
-      at += part.length;
-    }
-    return whole;
+    return whole.slice(0, length);
   }
-}
 
-/** What latest.json says of the retirement of its rule set, or null. */
-function noticeOf({ deprecated, sunset, because }) {
-  const date = (value) => (typeof value === "string" && /^\d{4}-\d\d-\d\d$/.test(value) ? value : null);
-  const { en, es } = because ?? {}, texts = typeof en === "string" && typeof es === "string" ? { en, es } : null;
-  return date(deprecated) || date(sunset) ? { deprecated: date(deprecated), sunset: date(sunset), because: texts } : null;
+  /** A small file. */
+  const document = async (name) => bytesOf(await answered(name), name, MOST_DOCUMENT_BYTES);
+
+  return {
+    counted,
+    document,
+
+    /** What latest.json says. It is not sealed: the bundle must bear it out. */
+    async latest() {
+      let data;
+      try {
+        data = JSON.parse(new TextDecoder().decode(await document("latest.json")));
+      } catch (error) {
+        if (error.detail) throw error;
+      }
+      const wrong = Object.keys(ANNOUNCED).find((member) => !ANNOUNCED[member].test(data?.[member]));
+      if (wrong) throw new BundleRefused("unreadable", `${wrong} of latest.json is ${shown(data?.[wrong])}; is this a rule-set/ folder?`);
+      const { deprecated, sunset, because } = data, date = (text) => (DATE.test(text) ? text : null);
+      const notice = { deprecated: date(deprecated), sunset: date(sunset), because: because?.en && because.es ? because : null };
+      return { ...data, notice: notice.deprecated || notice.sunset ? notice : null };
+    },
+
+    /** The text of a seal. */
+    async seal(name) {
+      const response = await answered(name, {}, 404);
+      if (response.status === 404) throw new BundleRefused("unsigned", `there is no ${name}: nobody vouches for these bytes`);
+      return new TextDecoder().decode(await bytesOf(response, name, MOST_DOCUMENT_BYTES));
+    },
+
+    /** The bundle that was announced, or null where the server says that it is the one of this digest. */
+    async bundle({ bundle, bytes }, held) {
+      const response = await answered(bundle, held && { "If-None-Match": `"${held}"` }, 304);
+      if (response.status === 304) return null;
+      const found = await bytesOf(response, bundle, bytes);
+      if (found.length < bytes) throw new BundleRefused("truncated", `${found.length} of ${bytes} bytes of ${bundle} arrived; try again`);
+      return found;
+    },
+  };
 }

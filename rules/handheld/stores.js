@@ -23,7 +23,6 @@ export class MemoryStore {
 
 /** Kept in a browser's IndexedDB; a put is done when its transaction has reached the disk. */
 export class IndexedDbStore {
-  #database;
   #name;
 
   /** @param {string} [name] of the database, which belongs to this store alone */
@@ -47,34 +46,22 @@ export class IndexedDbStore {
     return this.#run("readonly", (entries) => entries.getAllKeys());
   }
 
-  #opened() {
-    return (this.#database ??= new Promise((resolve, reject) => {
-      const request = indexedDB.open(this.#name, 1);
-      request.onupgradeneeded = () => request.result.createObjectStore("entries");
-      request.onerror = () => reject(request.error);
-      request.onsuccess = () => {
-        const database = request.result;
-        database.onclose = () => (this.#database = undefined);
-        database.onversionchange = () => {      // another page may delete it
-          database.close();
-          this.#database = undefined;
-        };
-        resolve(database);
-      };
-    }).catch((error) => {
-      this.#database = undefined;     // the next call tries again
-      throw error;
-    }));
-  }
-
+  /** Opened for each piece of work, so that no page stands in the way of another one that clears the site's data. */
   async #run(mode, work) {
-    const database = await this.#opened();
-    return new Promise((resolve, reject) => {
-      const transaction = database.transaction("entries", mode, { durability: "strict" });
-      let request;
-      transaction.oncomplete = () => resolve(request.result);
-      transaction.onabort = () => reject(transaction.error ?? request?.error);
-      request = work(transaction.objectStore("entries"));
+    const database = await new Promise((resolve, reject) => {
+      const opening = indexedDB.open(this.#name, 1);
+      opening.onupgradeneeded = () => opening.result.createObjectStore("entries");
+      opening.onsuccess = () => resolve(opening.result);
+      opening.onerror = () => reject(opening.error);
     });
+    try {
+      return await new Promise((resolve, reject) => {
+        const transaction = database.transaction("entries", mode, { durability: "strict" }), request = work(transaction.objectStore("entries"));
+        transaction.oncomplete = () => resolve(request.result);
+        transaction.onabort = () => reject(transaction.error ?? request.error);
+      });
+    } finally {
+      database.close();
+    }
   }
 }

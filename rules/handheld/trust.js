@@ -4,212 +4,175 @@
  * A seal is a detached JWS (RFC 7515, 7797, 9864) with one Ed25519 signature for each valid key of the publisher; one good signature by a key that is
  * trusted here is enough. Nothing of a bundle is parsed before its digest and its seal have been found good.
  */
+import { isObject } from "./problems.js";
 import { RuleSet, UnknownLanguage } from "./rule-set.js";
 import { sha256 } from "./sha256.js";
 
-export const RULE_SET = "precontact-rule-set", KEYS = "precontact-keys";    // what is sealed, so that one can never be passed off as the other
-const CURVE = "Ed25519", ALPHABET = "ABCDEFGHIJKLMNOPQRSTUVWXYZabcdefghijklmnopqrstuvwxyz0123456789-_";
-const MOST_SIGNATURES = 16, MOST_SEAL_BYTES = 20000;
+const CURVE = "Ed25519", MOST_SIGNATURES = 16, MOST_SEAL_BYTES = 20000;
+const RULE_SET = "precontact-rule-set", KEYS = "precontact-keys";       // what is sealed, so that one can never be passed off as the other
+const MALFORMED = "malformed-seal";
 // Where several signatures are no good, the reason that tells most is given.
-const TELLING = ["cannot-verify", "bytes-changed", "revoked-key", "wrong-type", "wrong-algorithm", "unknown-key", "malformed-seal"];
+const TELLING = ["cannot-verify", "bytes-changed", "revoked-key", "wrong-type", "wrong-algorithm", "unknown-key", MALFORMED];
 
 /** Bytes that are not used here: `code` for a program, `detail` in words. */
 export class BundleRefused extends Error {
   /** @param {string} code @param {string} detail */
   constructor(code, detail) {
     super(`${code}: ${detail}`);
-    this.name = "BundleRefused";
     this.code = code;
     this.detail = detail;
   }
 }
 
-const isObject = (value) => value !== null && typeof value === "object" && !Array.isArray(value);
-const isWord = (value) => typeof value === "string" && value.trim() !== "";
-const shown = (value) => (value === undefined ? "absent" : JSON.stringify(value).slice(0, 60));
+const refused = (code, detail) => new BundleRefused(code, detail);
+const isText = (value) => typeof value === "string" && value.trim();
+export const shown = (value) => JSON.stringify(value)?.slice(0, 60) ?? "absent";
+
+function must(code, good, place, value, right) {
+  if (!good) throw refused(code, `${place} is ${shown(value)}; ${right} is right`);
+}
+
+const utf8 = (text) => new TextEncoder().encode(text);
 
 /** "sha-256:" and the SHA-256 of these bytes in hexadecimal digits. @param {Uint8Array} bytes @returns {Promise<string>} */
 export async function digestOf(bytes) {
-  const { subtle } = globalThis.crypto ?? {};     // many times faster where there is one
+  const subtle = globalThis.crypto?.subtle;     // many times faster where there is one
   const hash = subtle ? new Uint8Array(await subtle.digest("SHA-256", bytes)) : sha256(bytes);
   return `sha-256:${Array.from(hash, (byte) => byte.toString(16).padStart(2, "0")).join("")}`;
 }
 
 /** Base64url without padding. */
-function encoded(bytes) {
-  let text = "", held = 0, bits = 0;
-  for (const byte of bytes) {
-    held = (held << 8) | byte;
-    for (bits += 8; bits >= 6; ) text += ALPHABET[(held >> (bits -= 6)) & 63];
-    held &= 63;
-  }
-  return bits ? text + ALPHABET[(held << (6 - bits)) & 63] : text;
-}
+const encoded = (bytes) => btoa(String.fromCharCode(...bytes)).replace(/[+/=]/g, (c) => ({ "+": "-", "/": "_" })[c] ?? "");
 
-/** The bytes of base64url text, or null for text that no encoder writes: other characters, padding, spare bits that are set. */
+/** The bytes of base64url text; none for text that no encoder writes: other characters, padding, spare bits that are set. */
 function decoded(text) {
-  if (typeof text !== "string" || !/^[\w-]+$/.test(text)) return null;
-  const bytes = [];
-  let held = 0, bits = 0;
-  for (const character of text) {
-    held = ((held << 6) | ALPHABET.indexOf(character)) & 0x3fff;
-    if ((bits += 6) >= 8) bytes.push((held >> (bits -= 8)) & 255);
+  try {
+    const bytes = Uint8Array.from(atob(text.replace(/-/g, "+").replace(/_/g, "/")), (c) => c.charCodeAt());
+    return encoded(bytes) === text ? bytes : [];
+  } catch {
+    return [];
   }
-  const whole = Uint8Array.from(bytes);
-  return encoded(whole) === text ? whole : null;
 }
 
 /** The JSON data in bytes or text; data that is parsed already is handed back. */
-function parsed(given, refuse, what) {
+function parsed(given, code, what) {
   if (isObject(given) && !ArrayBuffer.isView(given)) return given;
   try {
     return JSON.parse(typeof given === "string" ? given : new TextDecoder("utf-8", { fatal: true }).decode(given));
   } catch (error) {
-    throw refuse(`${what} is not JSON: ${error.message}`);
+    throw refused(code, `${what} is not JSON: ${error.message}`);
   }
 }
-
-const malformed = (detail) => new BundleRefused("malformed-seal", detail);
-const badKeys = (detail) => new BundleRefused("malformed-keys", detail);
 
 async function webCrypto(publicKey, signature, message) {
   try {
-    const { subtle } = globalThis.crypto, key = await subtle.importKey("raw", publicKey, CURVE, false, ["verify"]);
+    const { subtle } = crypto, key = await subtle.importKey("raw", publicKey, CURVE, false, ["verify"]);
     return await subtle.verify(CURVE, key, signature, message);
   } catch (error) {
-    throw new BundleRefused("cannot-verify", `this engine cannot verify an Ed25519 signature (${error.message}); ` +
-      "a page needs https or localhost and a browser of 2025 or later, another engine the option verify");
+    throw refused("cannot-verify", `no Ed25519 here (${error.message}): a page needs https and a recent browser, another engine the option verify`);
   }
 }
 
-/** The 32 bytes of a public JWK whose kid, where it has one, is its RFC 7638 thumbprint. */
-function publicKey(jwk, place) {
-  if (!isObject(jwk)) throw badKeys(`${place} is ${shown(jwk)}; a public JWK is right`);
-  if ("d" in jwk) throw badKeys(`${place} holds a private key; a list that is given away holds public ones`);
-  const { kty, crv, alg = CURVE, use = "sig" } = jwk;
-  for (const [name, found, right] of [["kty", kty, "OKP"], ["crv", crv, CURVE], ["alg", alg, CURVE], ["use", use, "sig"]]) {
-    if (found !== right) throw badKeys(`${place}.${name} is ${shown(found)}; "${right}" is right`);
-  }
-  const bytes = decoded(jwk.x);
-  if (bytes?.length !== 32) throw badKeys(`${place}.x is ${shown(jwk.x)}; the public key in 43 base64url characters is right`);
-  const kid = encoded(sha256(new TextEncoder().encode(`{"crv":"${CURVE}","kty":"OKP","x":"${jwk.x}"}`)));
-  if ((jwk.kid ?? kid) !== kid) throw badKeys(`${place}.kid is ${shown(jwk.kid)}; ${kid}, the thumbprint of the key, is right`);
-  return [kid, bytes];
-}
-
-/** The keys that may vouch, and those that never again may. Immutable. */
-export class Trust {
-  /** Made by `read`, `first` and `succeeding`. */
-  constructor(list, keys, revoked, verify) {
-    this.list = list;               // the document
-    this.serial = list.serial;
-    this.development = list.development;    // an ephemeral key: say so loudly
-    this.keys = keys;               // kid -> 32 bytes
-    this.revoked = revoked;         // kid -> because
-    this.verify = verify;
-  }
-
-  /**
-   * The trust that a key list gives, unchecked by any seal: for a list that is compiled in.
-   * @param {Uint8Array | string | object} list
-   * @param {(publicKey: Uint8Array, signature: Uint8Array, message: Uint8Array) => boolean | Promise<boolean>} [verify] for an engine without Ed25519
-   * @throws {BundleRefused}
-   */
-  static read(list, verify = webCrypto) {
-    const what = "the key list", data = parsed(list, badKeys, what);
-    if (!isObject(data)) throw badKeys(`${what} is ${shown(data)}; an object with serial, keys, revoked and development is right`);
-    const { serial, keys: jwks, revoked: gone, development } = data;
-    if (!Number.isSafeInteger(serial) || serial < 1) throw badKeys(`${what}.serial is ${shown(serial)}; a whole number from 1 upwards is right`);
-    for (const [name, rows] of [["keys", jwks], ["revoked", gone]]) {
-      if (!Array.isArray(rows)) throw badKeys(`${what}.${name} is ${shown(rows)}; a list is right`);
-    }
-    if (typeof development !== "boolean") throw badKeys(`${what}.development is ${shown(development)}; true or false is right`);
-    const keys = new Map(jwks.map((jwk, k) => publicKey(jwk, `${what}.keys[${k}]`)));
-    const revoked = new Map(gone.map((row, k) => {
-      if (!isWord(row?.kid) || !isWord(row.because)) throw badKeys(`${what}.revoked[${k}] is ${shown(row)}; texts kid and because are right`);
+/**
+ * Read a key list, unchecked by any seal: for one that is compiled in.
+ * @param {Uint8Array | string | object} list
+ * @param {(publicKey: Uint8Array, signature: Uint8Array, message: Uint8Array) => boolean | Promise<boolean>} [verify] for an engine without Ed25519
+ * @returns {Trust} {list, serial, development, keys: kid -> 32 bytes, revoked: kid -> because, verify}: not changed by anybody
+ * @throws {BundleRefused}
+ */
+export function readKeys(list, verify = webCrypto) {
+  const code = "malformed-keys", data = parsed(list, code, "the key list"), need = (...given) => must(code, ...given);
+  need(isObject(data), "the key list", data, "an object");
+  const { serial, development, keys, revoked } = data;
+  need(Number.isSafeInteger(serial) && serial > 0, "serial", serial, "a whole number from 1");
+  need(typeof development === "boolean", "development", development, "true or false");
+  need(Array.isArray(keys), "keys", keys, "a list");
+  need(Array.isArray(revoked), "revoked", revoked, "a list");
+  return {
+    list: data, serial, development, verify,
+    revoked: new Map(revoked.map((row, k) => {
+      need(isText(row?.kid) && isText(row.because), `revoked[${k}]`, row, "an object of texts kid and because");
       return [row.kid, row.because];
-    }));
-    return new Trust(data, keys, revoked, verify);
-  }
+    })),
+    keys: new Map(keys.map((jwk, k) => {
+      const place = `keys[${k}]`;
+      need(isObject(jwk) && !("d" in jwk), place, isObject(jwk) ? "private" : jwk, "a public JWK");
+      const { kty, crv, x, alg = CURVE, use = "sig" } = jwk, found = [kty, crv, alg, use].join();
+      need(found === `OKP,${CURVE},${CURVE},sig`, `${place}: kty, crv, alg, use`, found, `OKP,${CURVE},${CURVE},sig`);
+      const bytes = decoded(x), kid = encoded(sha256(utf8(`{"crv":"${CURVE}","kty":"OKP","x":"${x}"}`)));     // RFC 7638
+      need(bytes.length === 32, `${place}.x`, x, "base64url of 32 bytes");
+      need((jwk.kid ?? kid) === kid, `${place}.kid`, jwk.kid, `the thumbprint ${kid}`);
+      return [kid, bytes];
+    })),
+  };
+}
 
-  /** The trust of a first installation: a list that one of its own keys has sealed. @throws {BundleRefused} */
-  static async first(list, seal, verify) {
-    const trust = Trust.read(list, verify);
-    await trust.check(list, seal, KEYS);
-    return trust;
-  }
+/** The trust of a first installation: a list that one of its own keys has sealed. @throws {BundleRefused} */
+export async function firstKeys(list, seal, verify) {
+  const trust = readKeys(list, verify);
+  await check(trust, list, seal, KEYS);
+  return trust;
+}
 
-  /** The same keys, with these revoked too: a revoked key stays so for ever. @param {Iterable<[string, string]>} revoked */
-  remembering(revoked) {
-    return new Trust(this.list, this.keys, new Map([...this.revoked, ...revoked]), this.verify);
-  }
+/** The same keys, with these revoked too: a revoked key stays so for ever. @param {Trust} trust @param {Iterable<[string, string]>} revoked */
+export const remembering = (trust, revoked) => ({ ...trust, revoked: new Map([...trust.revoked, ...revoked]) });
 
-  /**
-   * The trust that takes the place of this one, from a newer key list sealed by a key of this one.
-   * @param {Uint8Array} list @param {Uint8Array | string | object} seal @returns {Promise<Trust>} @throws {BundleRefused}
-   */
-  async succeeding(list, seal) {
-    const newer = Trust.read(list, this.verify);
-    await this.check(list, seal, KEYS);
-    if (newer.serial <= this.serial) throw new BundleRefused("not-newer", `its serial is ${newer.serial}; one above ${this.serial} is right`);
-    return newer.remembering(this.revoked);
-  }
+/**
+ * The trust that takes the place of this one, from a newer key list sealed by a key of this one.
+ * @param {Trust} trust @param {Uint8Array} list @param {Uint8Array | string | object} seal @returns {Promise<Trust>} @throws {BundleRefused}
+ */
+export async function succeedingKeys(trust, list, seal) {
+  const newer = readKeys(list, trust.verify);
+  await check(trust, list, seal, KEYS);
+  if (newer.serial <= trust.serial) throw refused("not-newer", `the key list has serial ${newer.serial}; one above ${trust.serial} is right`);
+  return remembering(newer, trust.revoked);
+}
 
-  /**
-   * Find who vouches for these bytes.
-   * @param {Uint8Array} payload @param {Uint8Array | string | object} seal @param {string} [typ] what the bytes are
-   * @returns {Promise<string>} the kid of the key @throws {BundleRefused}
-   */
-  async check(payload, seal, typ = RULE_SET) {
-    if (seal === undefined || seal === null) throw new BundleRefused("unsigned", "there is no seal; bytes that nobody vouches for are not used");
-    if (seal.length > MOST_SEAL_BYTES) throw malformed(`the seal is ${seal.length} bytes long; at most ${MOST_SEAL_BYTES} are read`);
-    const data = parsed(seal, malformed, "the seal"), { signatures } = data ?? {};
-    if (!Array.isArray(signatures) || !signatures.length || signatures.length > MOST_SIGNATURES) {
-      throw malformed(`the seal has no list of 1 to ${MOST_SIGNATURES} signatures`);
-    }
-    if ("payload" in data) throw malformed("the seal carries a payload of its own; a detached one has none");
-    const refusals = [];
-    for (const [k, signature] of signatures.entries()) {
-      try {
-        return await this.#checked(payload, signature, typ, `signatures[${k}]`);
-      } catch (error) {
-        if (!(error instanceof BundleRefused)) throw error;
-        refusals.push(error);
-      }
-    }
-    throw refusals.sort((a, b) => TELLING.indexOf(a.code) - TELLING.indexOf(b.code))[0];
+/**
+ * Find who vouches for these bytes.
+ * @param {Trust} trust @param {Uint8Array} payload @param {Uint8Array | string | object} seal @param {string} [typ] what the bytes are
+ * @returns {Promise<string>} the kid of the key @throws {BundleRefused}
+ */
+export async function check(trust, payload, seal, typ = RULE_SET) {
+  if (!seal) throw refused("unsigned", "there is no seal: nobody vouches for these bytes");
+  if (seal.length > MOST_SEAL_BYTES) throw refused(MALFORMED, `the seal is longer than ${MOST_SEAL_BYTES} bytes`);
+  const data = parsed(seal, MALFORMED, "the seal"), signatures = data?.signatures;
+  if (!Array.isArray(signatures) || !signatures.length || signatures.length > MOST_SIGNATURES || "payload" in data) {
+    throw refused(MALFORMED, `the seal is not an object of 1 to ${MOST_SIGNATURES} signatures without a payload`);
   }
+  const refusals = [];
+  for (const [k, signature] of signatures.entries()) {
+    try {
+      return await checkOne(trust, payload, signature, typ, `signatures[${k}]`);
+    } catch (error) {
+      refusals.push(error);
+    }
+  }
+  throw refusals.sort((a, b) => TELLING.indexOf(a.code) - TELLING.indexOf(b.code))[0];
+}
 
-  async #checked(payload, given, typ, place) {
-    if (!isObject(given) || Object.keys(given).sort().join() !== "protected,signature") {
-      throw malformed(`${place} is not an object of protected and signature alone`);
-    }
-    const written = decoded(given.protected), signature = decoded(given.signature);
-    if (!written) throw malformed(`${place}.protected is not base64url`);
-    if (signature?.length !== 64) throw malformed(`${place}.signature is not 64 bytes of base64url`);
-    const header = parsed(written, malformed, `${place}.protected`);
-    if (!isObject(header)) throw malformed(`${place}.protected does not hold an object`);
-    const { alg, b64, crit, kid } = header;
-    if (alg !== CURVE) throw new BundleRefused("wrong-algorithm", `${place} is made with ${shown(alg)}; "${CURVE}" is right`);
-    if (b64 !== false || JSON.stringify(crit) !== '["b64"]') {
-      throw malformed(`${place} has b64 ${shown(b64)} and crit ${shown(crit)}; false and ["b64"], the bytes as they are, are right`);
-    }
-    if (header.typ !== typ) throw new BundleRefused("wrong-type", `${place} seals a ${shown(header.typ)}; "${typ}" is right`);
-    if (!isWord(kid)) throw malformed(`${place} names no key`);
-    if (this.revoked.has(kid)) throw new BundleRefused("revoked-key", `the key ${kid} is revoked: ${this.revoked.get(kid)}`);
-    const key = this.keys.get(kid);
-    if (!key) {
-      const trusted = [...this.keys.keys()].filter((name) => !this.revoked.has(name)).join(", ") || "none";
-      throw new BundleRefused("unknown-key", `the key ${kid.slice(0, 60)} is not trusted; trusted: ${trusted}`);
-    }
-    const head = new TextEncoder().encode(`${given.protected}.`), message = new Uint8Array(head.length + payload.length);
-    message.set(head);
-    message.set(payload, head.length);
-    if ((await this.verify(key, signature, message)) !== true) {
-      throw new BundleRefused("bytes-changed", `the signature of the key ${kid} is not over these bytes: they or the seal were changed`);
-    }
-    return kid;
+async function checkOne({ keys, revoked, verify }, payload, given, typ, place) {
+  const need = (good, what, value, right, code = MALFORMED) => must(code, good, place + what, value, right);
+  need(isObject(given) && Object.keys(given).sort().join() === "protected,signature", "", given, "an object of protected and signature");
+  const written = decoded(given.protected), signature = decoded(given.signature);
+  need(written.length, ".protected", given.protected, "base64url");
+  need(signature.length === 64, ".signature", given.signature, "base64url of 64 bytes");
+  const header = parsed(written, MALFORMED, `${place}.protected`);
+  need(isObject(header), ".protected", header, "an object");
+  const { alg, b64, crit, kid } = header;
+  need(alg === CURVE, ".alg", alg, CURVE, "wrong-algorithm");
+  need(b64 === false && shown(crit) === '["b64"]', ": b64, crit", [b64, crit], 'false,["b64"]');
+  need(header.typ === typ, ".typ", header.typ, typ, "wrong-type");
+  need(isText(kid), ".kid", kid, "the name of a key");
+  if (revoked.has(kid)) throw refused("revoked-key", `the key ${kid} is revoked: ${revoked.get(kid)}`);
+  need(keys.has(kid), ".kid", kid, `a trusted key (${[...keys.keys()].filter((name) => !revoked.has(name)).join(", ") || "none"})`, "unknown-key");
+  const head = utf8(`${given.protected}.`), message = new Uint8Array(head.length + payload.length);
+  message.set(head);
+  message.set(payload, head.length);
+  if ((await verify(keys.get(kid), signature, message)) !== true) {
+    throw refused("bytes-changed", `the signature of the key ${kid} is not over these bytes: they or the seal were changed`);
   }
+  return kid;
 }
 
 /**
@@ -217,21 +180,19 @@ export class Trust {
  * @param {Uint8Array} bytes
  * @param {object} options
  * @param {Uint8Array | string | object} options.seal
- * @param {Trust | Uint8Array | string | object} options.trust who may vouch: a Trust, or a key list that was compiled in
+ * @param {Trust | Uint8Array | string | object} options.trust who may vouch: what readKeys gave, or a key list that was compiled in
  * @param {string} [options.digest] what the digest must be, where it was announced
- * @param {Function} [options.verify] Ed25519 where WebCrypto has none, as for Trust.read
+ * @param {Function} [options.verify] Ed25519 for an engine without it, as for readKeys
  * @returns {Promise<RuleSet>} @throws {BundleRefused}
  */
 export async function openBundle(bytes, { seal, trust, digest, verify }) {
   const found = await digestOf(bytes);
-  if (digest !== undefined && digest !== found) {
-    throw new BundleRefused("wrong-digest", `the digest of the ${bytes.length} bytes is ${found}; ${digest} is right: they were changed`);
-  }
-  await (trust instanceof Trust ? trust : Trust.read(trust, verify)).check(bytes, seal);
+  if ((digest ?? found) !== found) throw refused("wrong-digest", `the ${bytes.length} bytes have the digest ${found}; ${digest} is right`);
+  await check(trust.verify ? trust : readKeys(trust, verify), bytes, seal);
   try {
     return new RuleSet(bytes, found);
   } catch (error) {
-    if (error instanceof UnknownLanguage) throw new BundleRefused("unknown-language", `${error.message}; a newer app is needed`);
-    throw new BundleRefused("unreadable", `the bundle is sealed, but is no rule set: ${error.message}`);
+    if (error instanceof UnknownLanguage) throw refused("unknown-language", `${error.message}: a newer app is needed`);
+    throw refused("unreadable", `the bundle is sealed, but is no rule set: ${error.message}`);
   }
 }

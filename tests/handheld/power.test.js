@@ -4,11 +4,14 @@ import { test } from "node:test";
 
 import { Keeper } from "../../rules/handheld/keeper.js";
 import { MemoryStore } from "../../rules/handheld/stores.js";
-import { LOADING, Server, bundle, bytesOf, keyList, madeKey, seal } from "./publisher.js";
+import { INDUCED, LOADING, Server, bundle, bytesOf, keyList, madeKey, seal } from "./publisher.js";
 import { Watched, failingAt, flip } from "./failing_stores.js";
 
 const key = madeKey(), second = madeKey();
-const OLD = bundle("1.0.0"), NEW = bundle("1.1.0"), NEWEST = bundle("1.2.0");
+const [OLD, NEW, NEWEST] = ["1.0.0", "1.1.0", "1.2.0"].map((version) => bundle(version, (data) => {
+  delete data.checks[INDUCED];      // one check is enough here, and starts sooner
+  data.cases.pop();
+}));
 const WAYS = ["before", "middle", "after"];
 
 async function copyOf(store) {
@@ -53,7 +56,7 @@ for (const [title, bundles, next, allowed] of [
   test(`the power fails in ${title}, at every operation and in three ways`, async () => {
     const { server, store } = await prepared(bundles, next), known = { "1.0.0": OLD, "1.1.0": NEW, "1.2.0": NEWEST };
     const count = await operations(store, (watched) => keeperOf(watched, server).update()), seen = new Map(allowed.map((version) => [version, 0]));
-    assert.ok(count >= 11, `only ${count} operations`);
+    assert.ok(count >= 10, `only ${count} operations`);
     for (let at = 0; at < count; at++) {
       for (const way of WAYS) {
         const left = await copyOf(store);
@@ -118,7 +121,7 @@ test("the power fails while a newer key list and its seals are taken", async () 
 
 test("the power fails at a start: the next one answers", async () => {
   const { server, store } = await prepared([OLD, NEW], NEW);
-  await store.remove("proofs");
+  await store.remove(server.latest.digest.replace("sha-256:", "proof."));
   const count = await operations(store, (watched) => keeperOf(watched, server).start());
   for (let at = 0; at < count; at++) {
     for (const way of WAYS) {
