@@ -18,8 +18,14 @@ export const problem = (pointer, code, detail) => ({ pointer, code, detail });
 export const isObject = (value) => typeof value === "object" && value !== null && !Array.isArray(value);
 export const escaped = (key) => key.replaceAll("~", "~0").replaceAll("/", "~1");
 
-const held = (value, depth = 0) => (typeof value === "number" ? value - value === 0 : typeof value !== "object" || value === null
-  || (depth < DEEPEST && Object.values(value).every((v) => held(v, depth + 1))));
+const isWhole = (text) => !/[\ud800-\udfff]/u.test(text);      // no half of a surrogate pair stands alone in it
+
+function held(value, depth = 0) {
+  if (typeof value === "number") return value - value === 0;
+  if (typeof value === "string") return isWhole(value);
+  return typeof value !== "object" || value === null
+    || (depth < DEEPEST && Object.keys(value).every(isWhole) && Object.values(value).every((v) => held(v, depth + 1)));
+}
 
 /** A value as it is quoted in a message: canonical JSON, shortened; what JSON cannot hold, or holds too deep, is not written out. */
 export function shown(value) {

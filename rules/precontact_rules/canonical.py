@@ -8,7 +8,7 @@ import hashlib
 import json
 import re
 
-_LAID_OUT_OTHERWISE = re.compile(r"\d\.0(?![\d])|\d[eE][-+]?\d|\d{17}|[\ud800-\U0010ffff]")
+_LAID_OUT_OTHERWISE = re.compile(r"\d\.0(?![\d])|\d[eE][-+]?\d|(?<![\d.])\d{16}|[\ud800-\U0010ffff]")
 
 _encode = json.JSONEncoder(sort_keys=True, separators=(",", ":"), ensure_ascii=False, allow_nan=False).encode
 

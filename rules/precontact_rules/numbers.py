@@ -1,7 +1,8 @@
 """Reading one number of a request: plain, or with a spread, checked against its declared range and brought to SI."""
 import math
 
-from .problems import Problem, shown
+from .canonical import number_as_ecmascript
+from .problems import Problem, in_order, shown
 
 EXACT_WHOLE = 2 ** 53      # beyond it not every whole number is a binary64; nothing on a test bench is larger
 SPREADS = ("half_width", "half_width_percent", "standard_uncertainty")
@@ -41,7 +42,8 @@ def number_reader(slot):
 
     def bad_number(x, pointer):
         if x != x or x in (math.inf, -math.inf):
-            return Problem(pointer, "not-finite", f"{x} is not a finite number; give one in {unit}")
+            found = "NaN" if x != x else "Infinity" if x > 0 else "-Infinity"
+            return Problem(pointer, "not-finite", f"{found} is not a finite number; give one in {unit}")
         if not low <= x <= high:
             return Problem(pointer, "out-of-range", f"{shown(x)} {unit} is outside the range; it must be {range_text(field)}")
         return Problem(pointer, "out-of-range", f"{shown(x)} has more digits than a binary64 number holds; whole numbers reach 2^53")
@@ -60,7 +62,7 @@ def number_reader(slot):
     def spread(x, problems, pointer):
         x = {key: value for key, value in x.items() if value is not None}
         given = [key for key in SPREADS if key in x]
-        unknown = [key for key in x if key not in SPREADS and key not in ("value", "between")]
+        unknown = in_order(key for key in x if key not in SPREADS and key not in ("value", "between"))
         if unknown:
             problems.append(Problem(f"{pointer}/{_escaped(unknown[0])}", "unknown-field", f"{shown(unknown[0])} is not part of an uncertain number; it is {_FORMS}"))
         elif len(given) + ("between" in x) > 1:
@@ -105,7 +107,7 @@ def range_text(field):
     parts = []
     for key, words in (("above", "above"), ("least", "at least"), ("below", "below"), ("most", "at most")):
         if key in field:
-            parts.append(f"{words} {field[key]:g}")
+            parts.append(f"{words} {number_as_ecmascript(field[key])}")
     return " and ".join(parts) or "between -2^53 and 2^53"
 
 

@@ -1,6 +1,9 @@
 """What is wrong with a request, item by item."""
-import json
 from typing import NamedTuple
+
+from .canonical import canonical_bytes
+
+_LONGEST, _DEEPEST, _MOST = 60, 32, 1.7976931348623157e308
 
 
 class Problem(NamedTuple):
@@ -19,10 +22,30 @@ class InputProblems(Exception):
         self.problems = problems
 
 
-def shown(value, longest=60):
-    """A value as it is quoted in a message: JSON, shortened."""
-    try:
-        text = json.dumps(value, ensure_ascii=False)
-    except (TypeError, ValueError, RecursionError):
-        text = type(value).__name__
-    return text if len(text) <= longest else text[:longest - 1] + "…"
+def in_order(keys):
+    """Keys of JSON objects in the order of their UTF-16 code units, which every runtime can sort by."""
+    return sorted(keys, key=lambda key: key.encode("utf-16-be", "surrogatepass"))
+
+
+def shown(value):
+    """A value as it is quoted in a message: canonical JSON, shortened; what JSON cannot hold, or holds too deep, is not written out."""
+    if not _held(value, 0):
+        return "a value that cannot be written here"
+    text = canonical_bytes(value).decode()
+    return text if len(text) <= _LONGEST else text[:_LONGEST - 1] + "…"
+
+
+def _held(value, depth):
+    kind = type(value)
+    if kind in (int, float):
+        return abs(value) <= _MOST
+    if kind is str:
+        return value.isascii() or _is_whole(value)
+    if kind in (list, dict):
+        return depth < _DEEPEST and all(_held(v, depth + 1) for v in (value.values() if kind is dict else value)) and (kind is list or all(map(_is_whole, value)))
+    return value is None or kind is bool
+
+
+def _is_whole(text):
+    """Whether no half of a surrogate pair stands alone in it."""
+    return not any("\ud800" <= letter <= "\udfff" for letter in text)

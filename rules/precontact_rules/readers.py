@@ -1,8 +1,14 @@
 """Reading one value of a request: a number, a choice, a switch, a text or a curve."""
+import re
 from operator import itemgetter
 
 from .numbers import EXACT_WHOLE, number_reader
 from .problems import Problem, shown
+
+# Controls, spaces other than the plain one, the soft hyphen, marks that are not seen or change the direction of text, separators of lines,
+# surrogates, private use, noncharacters: written out, since what Python calls printable changes with its version.
+_NOT_PRINTED = re.compile("[\0-\x1f\x7f-\xa0\xad\u061c\u1680\u180e\u2000-\u200f\u2028-\u202f\u205f-\u206f\u3000\ud800-\uf8ff"
+                          "\ufdd0-\ufdef\ufeff\ufff0-\uffff\U000e0000-\U0010ffff]")
 
 
 def reader(field, slot):
@@ -50,7 +56,7 @@ def _text_reader(longest):
             run.problems.append(Problem(pointer, "wrong-type", f"{shown(x)} is not text"))
         elif len(x) > longest:
             run.problems.append(Problem(pointer, "too-long", f"{len(x)} characters; at most {longest}"))
-        elif not x.isprintable():
+        elif _NOT_PRINTED.search(x):
             run.problems.append(Problem(pointer, "bad-characters", "holds a character that cannot be printed; plain text on one line is right"))
         else:
             return x or None

@@ -5,7 +5,7 @@ reference tables are made from.
 """
 from .declaration import Check
 from .numbers import entry_number
-from .problems import InputProblems, Problem, shown
+from .problems import InputProblems, Problem, in_order, shown
 from .readers import columns, reader
 
 NO_TITLE = {"en": "the instrument described", "es": "el instrumento descrito"}
@@ -88,8 +88,7 @@ def _compiled(node, bundle):
 
 
 def _unknown(body, keys, problems, pointer):
-    for key in body:
-        if key not in keys:
+    for key in in_order(body.keys() - keys):
             problems.append(Problem(f"{pointer}/{key.replace('~', '~0').replace('/', '~1')}", "unknown-field",
                                     f"{shown(key)} is not known here; the members are {', '.join(sorted(keys))}"))
 
