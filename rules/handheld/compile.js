@@ -75,7 +75,7 @@ function markSpent({ steps, results }) {
  * {data, sizes}, good until the next run.
  */
 export function compiled(graph, wanted) {
-  const { model, order } = graph, p = { graph, used: 0, constants: new Map(), found: new Map(), steps: [], inputs: [], version: 0 };
+  const { model, order } = graph, p = { graph, used: 0, constants: new Map(), found: new Map(), steps: [], inputs: [], borrowed: [], version: 0 };
   p.size = order.map((axis) => (axis === "samples" ? POINTS : axisFrom(model, axis) === "list" ? 0 : axisSize(model, axis)));
   const needed = neededFor(p, wanted), lists = order.slice(0, -1).filter((axis) => axisFrom(model, axis) === "list");
   p.uniforms = [...new Set(needed.filter(([{ op }, lane]) => op === "uniform" && lane === "s").map(([node]) => node.extra[0]))].sort((a, b) => a - b);
@@ -96,6 +96,7 @@ export function compiled(graph, wanted) {
     for (const { run, spent } of p.steps) {
       run();
       for (const from of spent) give(from.d);
+      while (p.borrowed.length) give(p.borrowed.pop());
     }
     return p.results.map(({ k, d, places }, i) => (k < 0 ? { data: d, sizes: places.map((q) => p.size[q]) } : truths[i] ? p.S[k] !== 0 : p.S[k]));
   };

@@ -10,10 +10,9 @@ const SIDED = ["lt", "le", "gt", "ge"];      // comparisons whose probability ca
 const pool = new Map();      // arrays that no run uses, by kind and length
 
 const kindOf = (size, boolean) => size * 2 + boolean;
-const take = (size, boolean) => pool.get(kindOf(size, boolean))?.pop() ?? array(size, boolean);
 
-/** A new array of numbers or truth values. */
-export const array = (size, boolean) => (boolean ? new Uint8Array(size) : new Float64Array(size));
+/** An array of numbers or truth values, from the pool where it has one. */
+export const take = (size, boolean = false) => pool.get(kindOf(size, boolean))?.pop() ?? (boolean ? new Uint8Array(size) : new Float64Array(size));
 
 /** Give an array back to the pool. */
 export function give(data) {
@@ -86,12 +85,13 @@ export function apply(p, op, operands, out) {
   }, out);
 }
 
-/** Reads the numbers of a place as an array that runs along `places`: its own where it already does. */
+/** Reads the numbers of a place, within a step, as an array that runs along `places`: its own where it already does. */
 export function along(p, from, places) {
   if (`${from.places}` === `${places}`) return () => from.d ?? p.S.subarray(from.k, from.k + 1);
   const loops = perSizes(p, (size) => nest(size, KERNELS.copy, places, [from.places])), start = [Math.max(from.k, 0)];
   return () => {
-    const out = array(total(p.size, places), from.boolean);
+    const out = take(total(p.size, places), from.boolean);
+    p.borrowed.push(out);
     loops()(out, 0, [from.d ?? p.S], start);
     return out;
   };

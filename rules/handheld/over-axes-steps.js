@@ -1,5 +1,5 @@
 /** The steps of operations along axes: op -> (program, node, out, lane). */
-import { along, apply, array, at, axisAt, input, isCorrected, perSizes, place, step } from "./machine.js";
+import { along, apply, at, axisAt, input, isCorrected, perSizes, place, step, take } from "./machine.js";
 import { coverageEnds, evenEnds, share } from "./coverage.js";
 import { foldSum } from "./exact-math.js";
 import { REDUCTIONS, atExtreme, placeOf, ranked, running, spreadOnto } from "./kernels.js";
@@ -14,14 +14,20 @@ const row = (data, r) => data.subarray(r * POINTS, (r + 1) * POINTS);
 /** [low, high] of each row of samples. */
 export const endsOfRows = (data, endsOf) => Array.from({ length: data.length / POINTS }, (_, r) => endsOf(row(data, r)));
 
-/** A step that fills an array for `out`: fill(array). */
+/** A step that fills an array for `out`: filler(array). */
 function fill(p, reads, out, filler) {
+  if (out.k >= 0) {
+    const single = new Float64Array(1);
+    step(p, reads, () => {
+      filler(single);
+      p.S[out.k] = single[0];
+    });
+    return;
+  }
   step(p, reads, () => {
-    const made = array(total(p.size, out.places), out.boolean);
-    filler(made);
-    if (out.k < 0) out.d = made;
-    else p.S[out.k] = made[0];
-  });
+    out.d = take(total(p.size, out.places), out.boolean);
+    filler(out.d);
+  }, out);
 }
 
 /** A step that computes one number for each element of `out`; compute() gives the function of its place. */

@@ -2,6 +2,7 @@
 import { answerWriter } from "./answer.js";
 import { digest, digestOf } from "./canonical.js";
 import { compileIntake } from "./intake.js";
+import { give, take } from "./machine.js";
 import { modelOf } from "./model.js";
 import { Plan } from "./plan.js";
 import { POINTS, PointSet, SCORE_LIMIT } from "./points.js";
@@ -47,7 +48,7 @@ class Question {
 
   answer(body, language) {
     const intake = this.intake(body), plan = this.plan(intake), { program } = plan;
-    let results, intervals = null, beyond = NOTHING;
+    let results, intervals = null, beyond = NOTHING, lent = NOTHING;
     if (plan.exact) {
       results = program.run(intake);
     } else {
@@ -57,8 +58,11 @@ class Question {
       results = program.run({ values, sampled, uniforms, drawn, sizes: intake.sizes });
       intervals = plan.intervals(results, drawn);
       beyond = outside;
+      lent = sampled;
     }
-    return this.write(intake, plan, results, intervals, beyond, digest(body), language);
+    const answer = this.write(intake, plan, results, intervals, beyond, digest(body), language);
+    for (const array of lent) if (array) give(array);
+    return answer;
   }
 
   /** Best estimates, sampled arrays, forms of the dimensions used, slots beyond their range; dimensions are handed out in slot order, then item order. */
@@ -75,7 +79,7 @@ class Question {
     for (const index of plan.sampled) {
       const given = values[index];
       if (!Array.isArray(given)) {
-        sampled[index] = drawnFrom(given, index, new Float64Array(POINTS));
+        sampled[index] = drawnFrom(given, index, take(POINTS));
         values[index] = given.value;
         continue;
       }
@@ -87,7 +91,7 @@ class Question {
       }
       values[index] = Float64Array.from(given, (v) => (v === null ? NaN : isSpread(v) ? v.value : v));
       if (!given.some(isSpread)) continue;
-      const rows = (sampled[index] = new Float64Array(given.length * POINTS));
+      const rows = (sampled[index] = take(given.length * POINTS));
       given.forEach((v, k) => {
         const row = rows.subarray(k * POINTS, (k + 1) * POINTS);
         if (isSpread(v)) drawnFrom(v, index, row);
