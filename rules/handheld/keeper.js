@@ -74,8 +74,8 @@ export class Keeper {
 
     /**
      * Open what is installed, from the store alone: digest, seal and proof are checked. All cases are proved once; afterwards one of each check.
-     * @type {() => Promise<{ruleSet, proof, trust, notice, bytes, milliseconds, reason}>} `reason`: why the bundle before the last one answers, or null;
-     * throws BundleRefused where nothing usable is installed
+     * @type {() => Promise<{ruleSet, proof, trust, notice, bytes, milliseconds, reason}>} `reason`: why the bundle before the last one answers, or
+     * null; rejects with BundleRefused where nothing usable is installed
      */
     this.start = start;
 

@@ -34,7 +34,8 @@ test("every changed bit of payload and signature is noticed", async () => {
   for (let bit = 0; bit < 512; bit++) {
     const changed = Buffer.from(raw);
     changed[bit >> 3] ^= 1 << (bit & 7);
-    await refused(() => check(trust, payload, { signatures: [{ ...good.signatures[0], signature: changed.toString("base64url") }] }), "bytes-changed");
+    const signatures = [{ ...good.signatures[0], signature: changed.toString("base64url") }];
+    await refused(() => check(trust, payload, { signatures }), "bytes-changed");
   }
 });
 
@@ -125,11 +126,15 @@ test("a first installation takes a list that one of its own keys sealed", async 
 test("a malformed key list is refused with place, value and what is right", async () => {
   const good = keyList([key]), jwk = (changed) => ({ ...good, keys: [{ ...key.jwk, ...changed }] });
   const cases = [
-    ["{", "not JSON"], ["[]", "the key list is []", "an object"], [{ ...good, serial: 0 }, "serial is 0", "a whole number from 1"], [{ ...good, serial: 1.5 }, "serial is 1.5"],
-    [{ ...good, keys: {} }, "keys is {}", "a list"], [{ ...good, revoked: undefined }, "revoked is absent"], [{ ...good, development: 0 }, "development is 0"],
+    ["{", "not JSON"], ["[]", "the key list is []", "an object"],
+    [{ ...good, serial: 0 }, "serial is 0", "a whole number from 1"], [{ ...good, serial: 1.5 }, "serial is 1.5"],
+    [{ ...good, keys: {} }, "keys is {}", "a list"], [{ ...good, revoked: undefined }, "revoked is absent"],
+    [{ ...good, development: 0 }, "development is 0", "true or false"],
     [{ ...good, revoked: [{ kid: key.kid }] }, "revoked[0]"], [{ ...good, keys: ["x"] }, 'keys[0] is "x"'],
-    [jwk({ d: "AAAA" }), "keys[0] is \"private\"", "a public JWK"], [jwk({ kty: "RSA" }), '"RSA,Ed25519,Ed25519,sig"', "OKP,Ed25519,Ed25519,sig is right"], [jwk({ crv: "X25519" }), "OKP,X25519,Ed25519,sig"],
-    [jwk({ alg: "EdDSA" }), "OKP,Ed25519,EdDSA,sig"], [jwk({ use: "enc" }), "Ed25519,enc"], [jwk({ x: "AAAA" }), "keys[0].x", "base64url of 32 bytes"],
+    [jwk({ d: "AAAA" }), "keys[0] is \"private\"", "a public JWK"], [jwk({ crv: "X25519" }), "OKP,X25519,Ed25519,sig"],
+    [jwk({ kty: "RSA" }), '"RSA,Ed25519,Ed25519,sig"', "OKP,Ed25519,Ed25519,sig is right"],
+    [jwk({ alg: "EdDSA" }), "OKP,Ed25519,EdDSA,sig"], [jwk({ use: "enc" }), "Ed25519,enc"],
+    [jwk({ x: "AAAA" }), "keys[0].x", "base64url of 32 bytes"],
     [jwk({ x: key.jwk.x.slice(0, -1) + "B" }), "keys[0].x"], [jwk({ kid: other.kid }), other.kid, key.kid, "thumbprint"],
   ];
   for (const [list, ...words] of cases) await refused(() => readKeys(list), "malformed-keys", ...words);
