@@ -2,7 +2,7 @@
 import { make } from "./elements.js";
 import { trailInWords } from "./faults.js";
 import { interval, shown, worked } from "./quantities.js";
-import { DESCRIBED, SPREADS, asTyped, placed } from "./question.js";
+import { DESCRIBED, SPREADS, asTyped, entered, placed } from "./question.js";
 import { capital, ofRules, say } from "./texts.js";
 
 /**
@@ -15,7 +15,7 @@ export function answerSections(bundle, answer, question) {
   const check = bundle.checks[answer.check];
   return [
     verdict(check, answer),
-    findings(answer),
+    findings(bundle, check, answer),
     jump(answer),
     numbers(bundle, check, answer, question),
     cautions(answer),
@@ -35,7 +35,7 @@ function verdict(check, answer) {
   );
 }
 
-function findings(answer) {
+function findings(bundle, check, answer) {
   return make(
     "section",
     { "aria-labelledby": "found" },
@@ -48,7 +48,7 @@ function findings(answer) {
           "li",
           { class: i ? null : "decisive" },
           i && finding.verdict !== "note" ? make("strong", {}, `${say(`verdict-${finding.verdict}`)}: `) : null,
-          finding.sentence,
+          inPlainWords(bundle, check, finding.sentence),
         ),
       ),
     ),
@@ -88,7 +88,8 @@ function numbers(bundle, check, answer, question) {
     const several = Array.isArray(result),
       rows = several ? result : [result];
     if (rows.some((row) => row.value !== null)) given.push(quantity(bundle, check, formula, result, question));
-    else if (rows.length) lacking.push(make("li", {}, `${capital(ofRules(formula.meaning))}: ${rows[0].reason || say("no-value")}`));
+    else if (rows.length)
+      lacking.push(make("li", {}, `${capital(ofRules(formula.meaning))}: ${inPlainWords(bundle, check, rows[0].reason) || say("no-value")}`));
   }
   return make(
     "section",
@@ -150,7 +151,7 @@ function cautions(answer) {
         make(
           "p",
           { class: "signal" },
-          make("span", { class: "alert-sign", "aria-hidden": "true" }, caution.word === "notice" ? "" : "▲"),
+          make("span", { "class": "alert-sign", "aria-hidden": "true" }, caution.word === "notice" ? "" : "▲"),
           say(`signal-${caution.word}`),
         ),
         make("p", {}, caution.text),
@@ -199,6 +200,18 @@ function unverified(bundle, check, answer) {
       ),
     ),
   );
+}
+
+/** A sentence with the pointers and names in it replaced by what they mean. */
+function inPlainWords(bundle, check, sentence) {
+  const pointers = sentence?.replace(/(?:\/[a-z0-9_]+)+/g, (pointer) => {
+    const at = placed(bundle, check, pointer);
+    return at.field && !at.rest.length ? `“${trailInWords(at)}”` : pointer;
+  });
+  return pointers?.replace(/\b[a-z][a-z0-9_]*(?:\.[a-z][a-z0-9_]*)+\b/g, (name) => {
+    const meaning = meaningOf(bundle, check, name);
+    return meaning === name ? name : `“${meaning}”`;
+  });
 }
 
 /** The meaning of a name that formulas use: a field, a formula, a constant. */
@@ -253,7 +266,7 @@ function typedInWords(bundle, field, given) {
   if (field.kind === "number") {
     const symbol = bundle.units[field.unit].symbol;
     const spread = SPREADS.includes(given.spread) && given.other.trim();
-    return `${given.text} ${symbol}`.trim() + (spread ? `; ${say(`spread-${given.spread}`, { unit: symbol })}: ${given.other}` : "");
+    return `${entered(given, { symbol })} ${symbol}`.trim() + (spread ? `; ${say(`spread-${given.spread}`, { unit: symbol })}: ${given.other}` : "");
   }
   if (field.kind === "choice") return ofRules(field.choices.find((choice) => choice.key === given)?.meaning || { en: given, es: given });
   if (field.kind === "switch") return say(given);

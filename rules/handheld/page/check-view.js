@@ -49,13 +49,13 @@ export async function checkView(name) {
         make("label", { for: "point-name" }, say("point-name")),
         make("p", { class: "hint", id: "point-name-hint" }, say("point-name-hint")),
         make("input", {
-          type: "text",
-          id: "point-name",
-          autocomplete: "off",
-          maxlength: 80,
-          value: draft.name,
+          "type": "text",
+          "id": "point-name",
+          "autocomplete": "off",
+          "maxlength": 80,
+          "value": draft.name,
           "aria-describedby": "point-name-hint",
-          oninput: (event) => {
+          "oninput": (event) => {
             draft.name = event.target.value;
             changed();
           },

@@ -28,7 +28,7 @@ function ask(verb, ...given) {
   });
 }
 
-/** Open the rule set that the device holds: {data, version, digest, proof, blocked, trust, notice, bytes, milliseconds}; rejects with {code, detail}. */
+/** Open the rule set that the device holds, as `opened` in bench.js describes it; rejects with {code, detail}. */
 export const start = () => ask("start");
 
 /** Ask for a newer rule set: {state, version, digest, bytes, milliseconds, reason, opened}; `opened`, as of start, is what answers then. */

@@ -87,7 +87,7 @@ function mark(holder, pointer, words, where, seen) {
   if (seen.has(id)) return control;
   seen.add(id);
   const legend = holder.matches("fieldset") ? holder.querySelector("legend") : holder.querySelector("label");
-  legend.after(make("p", { class: "fault", id }, make("span", { class: "fault-sign", "aria-hidden": "true" }, "✕ "), words));
+  legend.after(make("p", { class: "fault", id }, make("span", { "class": "fault-sign", "aria-hidden": "true" }, "✕ "), words));
   for (const input of control.type === "radio" ? holder.querySelectorAll("input") : [control]) {
     if (!input.matches("button, fieldset")) input.setAttribute("aria-invalid", "true");
     input.setAttribute("aria-describedby", [id, input.getAttribute("aria-describedby")].filter(Boolean).join(" "));

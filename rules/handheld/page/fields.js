@@ -1,7 +1,8 @@
 /** The controls of one field: a number, a choice, a switch, a text or a curve. Each writes what is typed into its part of the draft. */
 import { button, fill, idOf, make } from "./elements.js";
 import { inWords } from "./faults.js";
-import { PERCENT, SPREADS, applies } from "./question.js";
+import { PERCENT, SPREADS, applies, entered } from "./question.js";
+import { keypad } from "./settings.js";
 import { capital, ofRules, say } from "./texts.js";
 import { spelled, typed } from "./typed.js";
 
@@ -61,28 +62,34 @@ function number(field, draft, pointer, form, own) {
     unit = form.bundle.units[field.unit];
   const read = make("p", { class: "as-read", id: `${id}:read` }),
     hint = hintOf(field, form, own, id);
-  const sign = unit.symbol && make("span", { class: "unit", id: `${id}:unit` }, unit.symbol);
+  const prefix = unit.prefixes && (keypad() === "digits" || given.prefix) && prefixes(field, given, id, unit, () => show());
+  const sign = unit.symbol && make("span", { class: prefix ? "unseen" : "unit", id: `${id}:unit` }, unit.symbol);
   const input = make("input", {
     ...typing,
+    "inputmode": keypad() === "digits" ? "decimal" : undefined,
     id,
-    value: given.text,
+    "value": given.text,
     "aria-describedby": described(sign, read, hint),
     "aria-required": field.required && "true",
   });
-  const uncertainty = field.uncertain && spread(field, given, id, unit, form, () => show());
-  const show = () => fill(read, asRead(given, unit, form.language));
+  const uncertainty = field.uncertain && spread(field, given, id, unit, () => show());
+  const show = () => {
+    const words = asRead(given, unit, form.language);
+    fill(read, words);
+    read.classList.toggle("wrong", Boolean(words) && !words.startsWith("="));
+    form.changed();
+  };
   input.addEventListener("input", () => {
     given.text = input.value;
     show();
-    form.changed();
   });
   show();
   return make(
     "div",
-    { class: "field", "data-at": pointer },
+    { "class": "field", "data-at": pointer },
     make("label", { for: id }, asked(field)),
     hint,
-    make("div", { class: "entry" }, input, sign, uncertainty?.key),
+    make("div", { class: "entry" }, input, prefix, sign, uncertainty?.key),
     uncertainty?.panel,
     read,
   );
@@ -90,18 +97,35 @@ function number(field, draft, pointer, form, own) {
 
 /** How the number is understood, shown while it is typed. */
 function asRead(given, unit, language) {
-  const value = typed(given.text, unit, language);
+  const value = typed(entered(given, unit), unit, language);
   if (!value) return "";
   if (value.fault) return inWords(value, unit);
   const base = spelled(value.value, unit, language);
   if (!given.spread || !given.other.trim()) return `= ${base}`;
-  const other = typed(given.other, given.spread === "half_width_percent" ? PERCENT : unit, language);
-  if (other.fault) return inWords(other, unit);
-  return `= ${say(`read-${given.spread}`, { value: base, other: spelled(other.value, given.spread === "half_width_percent" ? PERCENT : unit, language) })}`;
+  const sizeUnit = given.spread === "half_width_percent" ? PERCENT : unit;
+  const other = typed(given.other, sizeUnit, language);
+  if (other.fault) return inWords(other, sizeUnit);
+  return `= ${say(`read-${given.spread}`, { value: base, other: spelled(other.value, sizeUnit, language) })}`;
+}
+
+/** The prefix to pick where the keypad has large digits only. */
+function prefixes(field, given, id, unit, show) {
+  const select = make(
+    "select",
+    { "id": `${id}:prefix`, "class": "prefix", "aria-label": say("prefix-of", { field: ofRules(field.meaning) }) },
+    ["", "p", "n", "µ", "m", "k", "M", "G"].map((letter) =>
+      make("option", { value: letter, selected: letter === (given.prefix || "") }, letter + unit.symbol),
+    ),
+  );
+  select.addEventListener("change", () => {
+    given.prefix = select.value;
+    show();
+  });
+  return select;
 }
 
 /** The key that opens the uncertainty of a number, and its panel. */
-function spread(field, given, id, unit, form, show) {
+function spread(field, given, id, unit, show) {
   const words = ofRules(field.meaning),
     sign = make("span", { class: "unit" });
   const other = make("input", { ...typing, id: `${id}:other`, value: given.other });
@@ -116,7 +140,7 @@ function spread(field, given, id, unit, form, show) {
   );
   const panel = make(
     "div",
-    { class: "spread", id: `${id}:panel`, hidden: !given.spread, role: "group", "aria-label": say("spread-of", { field: words }) },
+    { "class": "spread", "id": `${id}:panel`, "hidden": !given.spread, "role": "group", "aria-label": say("spread-of", { field: words }) },
     make("div", { class: "stacked" }, make("label", { for: `${id}:spread` }, say("spread")), select),
     entry,
   );
@@ -127,7 +151,7 @@ function spread(field, given, id, unit, form, show) {
       key.setAttribute("aria-expanded", String(!panel.hidden));
       if (!panel.hidden) select.focus();
     },
-    { class: "spread-key", "aria-expanded": String(!panel.hidden), "aria-controls": panel.id, "aria-label": say("spread-of", { field: words }) },
+    { "class": "spread-key", "aria-expanded": String(!panel.hidden), "aria-controls": panel.id, "aria-label": say("spread-of", { field: words }) },
   );
   const arrange = () => {
     entry.hidden = !given.spread;
@@ -138,12 +162,10 @@ function spread(field, given, id, unit, form, show) {
     given.spread = select.value;
     arrange();
     show();
-    form.changed();
   });
   other.addEventListener("input", () => {
     given.other = other.value;
     show();
-    form.changed();
   });
   arrange();
   return { key, panel };
@@ -178,8 +200,8 @@ export function options(field, open, draft, pointer, form, own = {}) {
     own.changed?.(value);
     form.changed();
   };
-  if (open.length > RADIOS_UP_TO) return picked(field, open, current, id, pointer, hint, take);
-  const all = field.required ? open : [...open, ["", say("not-stated")]];
+  if (open.length > RADIOS_UP_TO) return picked(field, open, current, pointer, hint, take, own.unset);
+  const all = field.required ? open : [...open, ["", own.unset || say("not-stated")]];
   const radios = all.map(([key, words], i) => {
     const at = i ? `${id}:${i}` : id;
     return make(
@@ -198,21 +220,22 @@ export function options(field, open, draft, pointer, form, own = {}) {
   });
   return make(
     "fieldset",
-    { class: "field options", "data-at": pointer, "aria-describedby": hint ? hint.id : undefined },
+    { "class": "field options", "data-at": pointer, "aria-describedby": hint ? hint.id : undefined },
     make("legend", {}, asked(field)),
     hint,
     radios,
   );
 }
 
-function picked(field, open, current, id, pointer, hint, take) {
+function picked(field, open, current, pointer, hint, take, unset) {
+  const id = idOf(pointer);
   const select = make(
     "select",
-    { id, "aria-describedby": described(hint), "aria-required": field.required && "true", onchange: () => take(select.value) },
-    make("option", { value: "" }, say(field.required ? "choose" : "not-stated")),
+    { id, "aria-describedby": described(hint), "aria-required": field.required && "true", "onchange": () => take(select.value) },
+    make("option", { value: "" }, unset || say(field.required ? "choose" : "not-stated")),
     open.map(([key, words]) => make("option", { value: key, selected: key === current }, words)),
   );
-  return make("div", { class: "field", "data-at": pointer }, make("label", { for: id }, asked(field)), hint, select);
+  return make("div", { "class": "field", "data-at": pointer }, make("label", { for: id }, asked(field)), hint, select);
 }
 
 function plainText(field, draft, pointer, form, own) {
@@ -221,8 +244,8 @@ function plainText(field, draft, pointer, form, own) {
   const input = make("input", {
     ...typing,
     id,
-    value: draft[field.key],
-    maxlength: field.longest,
+    "value": draft[field.key],
+    "maxlength": field.longest,
     "aria-describedby": described(hint),
     "aria-required": field.required && "true",
   });
@@ -230,7 +253,7 @@ function plainText(field, draft, pointer, form, own) {
     draft[field.key] = input.value;
     form.changed();
   });
-  return make("div", { class: "field", "data-at": pointer }, make("label", { for: id }, asked(field)), hint, input);
+  return make("div", { "class": "field", "data-at": pointer }, make("label", { for: id }, asked(field)), hint, input);
 }
 
 function curve(field, draft, pointer, form, own) {
@@ -254,15 +277,15 @@ function curve(field, draft, pointer, form, own) {
       rows.map((row, i) =>
         make(
           "div",
-          { class: "pair", role: "group", "aria-label": say("point-number", { number: i + 1 }) },
+          { "class": "pair", "role": "group", "aria-label": say("point-number", { number: i + 1 }) },
           units.map((unit, j) =>
             make("input", {
               ...typing,
-              id: `${idOf(pointer)}/${i}/${j}`,
-              value: row[j],
-              placeholder: unit.symbol,
+              "id": `${idOf(pointer)}/${i}/${j}`,
+              "value": row[j],
+              "placeholder": unit.symbol,
               "aria-label": `${say("point-number", { number: i + 1 })}, ${unit.symbol}`,
-              oninput: (event) => {
+              "oninput": (event) => {
                 row[j] = event.target.value;
                 form.changed();
               },
@@ -275,11 +298,11 @@ function curve(field, draft, pointer, form, own) {
               arrange();
               add.focus();
             },
-            { class: "quiet", "aria-label": say("remove-point", { number: i + 1 }) },
+            { "class": "quiet", "aria-label": say("remove-point", { number: i + 1 }) },
           ),
         ),
       ),
     );
   arrange();
-  return make("fieldset", { class: "field", "data-at": pointer }, make("legend", {}, asked(field)), hint, list, add);
+  return make("fieldset", { "class": "field", "data-at": pointer }, make("legend", {}, asked(field)), hint, list, add);
 }

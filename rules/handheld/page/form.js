@@ -43,7 +43,7 @@ export function fieldsOf(bundle, check, draft, { language, changed }) {
 /** Whether anything was typed into a part of a draft. */
 function touched(value) {
   if (value === null || typeof value !== "object") return Boolean(value);
-  return Object.entries(value).some(([key, inner]) => key !== "spread" && touched(inner));
+  return Object.entries(value).some(([key, inner]) => key !== "spread" && key !== "prefix" && touched(inner));
 }
 
 /** Whether a field asks for something that the question cannot do without. */
@@ -74,7 +74,7 @@ function group(field, draft, pointer, form) {
   const inner = field.fields.filter((one) => applies(one, form.branch));
   return make(
     "fieldset",
-    { class: "group", id: idOf(pointer), "data-at": pointer },
+    { "class": "group", "id": idOf(pointer), "data-at": pointer },
     make("legend", {}, asked(field)),
     inner.map((one) => built(one, draft, pointer, form)),
   );
@@ -92,7 +92,7 @@ function list(field, items, pointer, form) {
       focusOn(holder.lastElementChild.querySelector("input, select"));
       form.changed();
     },
-    { id: idOf(pointer), class: "quiet", "aria-label": say("add-item-to", { list: words }) },
+    { "id": idOf(pointer), "class": "quiet", "aria-label": say("add-item-to", { list: words }) },
   );
   const arrange = () => {
     fill(
@@ -100,7 +100,7 @@ function list(field, items, pointer, form) {
       items.map((item, i) =>
         make(
           "fieldset",
-          { class: "group item", id: idOf(`${pointer}/${i}`), "data-at": `${pointer}/${i}` },
+          { "class": "group item", "id": idOf(`${pointer}/${i}`), "data-at": `${pointer}/${i}` },
           make("legend", {}, say("item-number", { number: i + 1 }), make("span", { class: "unseen" }, ` ${words}`)),
           field.fields.filter((one) => applies(one, form.branch)).map((one) => built(one, item, `${pointer}/${i}`, form)),
           button(
@@ -120,7 +120,7 @@ function list(field, items, pointer, form) {
     fill(count, items.length >= field.most ? say("list-full", { most: field.most }) : "");
   };
   arrange();
-  return make("fieldset", { class: "group", "data-at": pointer }, make("legend", {}, asked(field)), holder, count, add);
+  return make("fieldset", { "class": "group", "data-at": pointer }, make("legend", {}, asked(field)), holder, count, add);
 }
 
 /** An entry of a catalogue, with other values for some of its fields, or described from nothing. */
@@ -152,7 +152,7 @@ function members(kind, entry, given, pointer, form) {
         given.own,
         `${pointer}/${field.key}`,
         form,
-        stored === undefined ? {} : { hint: say("in-catalogue", { value: catalogued(field, stored, form) }) },
+        entry ? { unset: say("as-catalogue"), hint: stored !== undefined && say("in-catalogue", { value: catalogued(field, stored, form) }) } : {},
       );
     });
   if (!entry)

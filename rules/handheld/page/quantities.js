@@ -3,11 +3,13 @@ import { ofRules, say, spoken } from "./texts.js";
 import { spelled } from "./typed.js";
 
 const DIGITS = 4;
-const RAISED = { "-": "⁻", 0: "⁰", 1: "¹", 2: "²", 3: "³", 4: "⁴", 5: "⁵", 6: "⁶", 7: "⁷", 8: "⁸", 9: "⁹" };
+const LEAST_SHARE = 1e-6; // a smaller probability is written as such: its digits tell nobody anything
+const RAISED = { "-": "⁻", "0": "⁰", "1": "¹", "2": "²", "3": "³", "4": "⁴", "5": "⁵", "6": "⁶", "7": "⁷", "8": "⁸", "9": "⁹" };
 
 /** A value in its own unit: "22.92 V", "2.292 µA", "3.46 × 10⁻³⁰⁸". */
 export function shown(value, unit) {
   if (value === null || value === undefined) return say("no-value");
+  if (!unit.symbol && value > 0 && value < LEAST_SHARE) return say("below", { value: spelled(LEAST_SHARE, unit, spoken()) });
   const text = spelled(Number(value.toPrecision(DIGITS)), unit, spoken());
   return text.replace(/e(-?)(\d+)/, (_, sign, power) => ` × 10${[...(sign + power)].map((digit) => RAISED[digit]).join("")}`);
 }

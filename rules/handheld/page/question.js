@@ -2,13 +2,17 @@
  * From what was typed to the question: a draft holds the text as typed, member by member as the rule set declares the check; the question
  * is its JSON.
  *
- * A draft mirrors the declaration. A number is {text, spread, other}: `spread` is "" or a form of uncertainty, `other` its size (for
- * "between", the upper end). A reference is {pick, own}: the id, DESCRIBED, or nothing; `own` is a draft of the kind's fields. A list or a curve is an array.
+ * A draft mirrors the declaration. A number is {text, prefix, spread, other}: `spread` is "" or a form of uncertainty, `other` its size (for
+ * "between", the upper end). A reference is {pick, own}: the id, DESCRIBED, or nothing; `own` is a draft of the kind's fields. A list or a
+ * curve is an array.
  */
 import { typed } from "./typed.js";
 
 export const DESCRIBED = "*"; // no id has a star
 export const SPREADS = ["half_width_percent", "half_width", "standard_uncertainty", "between"];
+
+/** What was entered for a number: the text, and the prefix that was picked beside it. In metres a prefix needs its unit. */
+export const entered = ({ text, prefix }, unit) => (prefix && text.trim() ? text + prefix + (unit.symbol === "m" ? "m" : "") : text);
 export const PERCENT = { symbol: "%", prefixes: false };
 
 /** Whether a field, or one of its choices, belongs to the branch. */
@@ -24,7 +28,7 @@ export function part(draft, field) {
 }
 
 function emptyPart(field) {
-  if (field.kind === "number") return { text: "", spread: "", other: "" };
+  if (field.kind === "number") return { text: "", prefix: "", spread: "", other: "" };
   if (field.kind === "reference") return { pick: "", own: {} };
   if (field.kind === "list") return field.required ? Array.from({ length: Math.max(field.least, 1) }, () => ({})) : [];
   if (field.kind === "curve") return [];
@@ -53,7 +57,7 @@ function members(fields, draft, run, pointer) {
 const READERS = {
   number(field, given, run, pointer) {
     const unit = run.bundle.units[field.unit],
-      value = one(given.text, unit, run, pointer);
+      value = one(entered(given, unit), unit, run, pointer);
     if (!field.uncertain || !given.spread) return value;
     if (given.spread === "between") {
       const high = one(given.other, unit, run, pointer, "other");

@@ -2,7 +2,7 @@
 import { announce, button, make } from "./elements.js";
 import { all, remove, removeAll } from "./points.js";
 import { session, storeDraft } from "./session.js";
-import { ofRules, say, spoken } from "./texts.js";
+import { locale, ofRules, say } from "./texts.js";
 
 /** All points that this device keeps. */
 export async function recentView() {
@@ -33,7 +33,7 @@ function filled(points, data, draw) {
   };
   const sure = make(
     "div",
-    { class: "sure", hidden: true, role: "group", "aria-label": say("delete-all") },
+    { "class": "sure", "hidden": true, "role": "group", "aria-label": say("delete-all") },
     make("p", {}, say("delete-all-sure", { count: points.length })),
     make(
       "div",
@@ -84,7 +84,7 @@ function filled(points, data, draw) {
 export function pointCard(point, data, deleting) {
   const check = data.checks[point.check],
     title = point.name || (check ? ofRules(check.title) : point.check);
-  const when = new Date(point.at).toLocaleString(spoken(), { dateStyle: "medium", timeStyle: "short" });
+  const when = new Date(point.at).toLocaleString(locale(), { dateStyle: "medium", timeStyle: "short" });
   return make(
     "li",
     { class: "point" },
@@ -102,14 +102,14 @@ export function pointCard(point, data, deleting) {
           make(
             "a",
             {
-              class: "button quiet",
-              href: `#/check/${point.check}`,
+              "class": "button quiet",
+              "href": `#/check/${point.check}`,
               "aria-label": `${say("change-question")}: ${title}, ${when}`,
-              onclick: () => storeDraft(point.check, { name: point.name, fields: structuredClone(point.draft) }),
+              "onclick": () => storeDraft(point.check, { name: point.name, fields: structuredClone(point.draft) }),
             },
             say("change-question"),
           ),
-        button(say("delete"), deleting, { class: "quiet", "aria-label": `${say("delete")}: ${title}, ${when}` }),
+        button(say("delete"), deleting, { "class": "quiet", "aria-label": `${say("delete")}: ${title}, ${when}` }),
       ),
   );
 }

@@ -5,7 +5,7 @@ import { announce, button, make } from "./elements.js";
 import { one } from "./points.js";
 import { recentView } from "./recent-view.js";
 import { session, storeDraft } from "./session.js";
-import { ofRules, say, spoken } from "./texts.js";
+import { locale, ofRules, say, spoken } from "./texts.js";
 
 /** An answer that was given on this device. */
 export async function recordView(id) {
@@ -100,7 +100,7 @@ function basis(point, answer, proof, sameRules) {
       row("basis-digest", make("code", {}, answer.rule_set.digest)),
       sameRules && row("basis-proof", say("proof", proof)),
       row("basis-question", make("code", {}, answer.input_digest)),
-      row("basis-when", new Date(point.at).toLocaleString(spoken(), { dateStyle: "medium", timeStyle: "short" })),
+      row("basis-when", new Date(point.at).toLocaleString(locale(), { dateStyle: "medium", timeStyle: "short" })),
       row("basis-time", say("milliseconds", { count: point.milliseconds < 10 ? point.milliseconds.toFixed(1) : Math.round(point.milliseconds) })),
     ),
   );

@@ -1,8 +1,8 @@
 /** The view of the rule set on this device, of its updates, and of how the page is shown. */
 import { button, make } from "./elements.js";
 import { session, updateRules } from "./session.js";
-import { LIGHTS, chooseLanguage, chooseLight, light } from "./settings.js";
-import { canSay, ofRules, say, spoken } from "./texts.js";
+import { KEYPADS, LIGHTS, chooseKeypad, chooseLanguage, chooseLight, keypad, light } from "./settings.js";
+import { canSay, locale, ofRules, say, spoken } from "./texts.js";
 
 /** Notices that hold for every view: a key of development, a rule set that is withdrawn from use, a check that is blocked. */
 export function noticeTexts() {
@@ -21,7 +21,7 @@ export function noticeTexts() {
 }
 
 function retirement({ deprecated, sunset, because }) {
-  const day = (date) => new Date(date).toLocaleDateString(spoken(), { dateStyle: "long", timeZone: "UTC" });
+  const day = (date) => new Date(date).toLocaleDateString(locale(), { dateStyle: "long", timeZone: "UTC" });
   return [deprecated && say("deprecated", { date: day(deprecated) }), sunset && say("sunset", { date: day(sunset) }), because && ofRules(because)]
     .filter(Boolean)
     .join(" ");
@@ -37,7 +37,7 @@ function size(bytes) {
   return bytes < 1000 ? say("bytes", { count: bytes }) : say("kilobytes", { count: Math.round(bytes / 1000) });
 }
 
-const seconds = (milliseconds) => say("seconds", { count: (milliseconds / 1000).toLocaleString(spoken(), { maximumFractionDigits: 2 }) });
+const seconds = (milliseconds) => say("seconds", { count: (milliseconds / 1000).toLocaleString(locale(), { maximumFractionDigits: 2 }) });
 
 /** What the last update did. */
 function updateText() {
@@ -78,6 +78,7 @@ export async function ruleSetView() {
       button(say("update-now"), () => updateRules(), { class: "primary", disabled: session.update?.state === "asking" }),
       make("h2", {}, say("settings-heading")),
       chosen("settings-light", "light", LIGHTS, light(), (one) => say(`light-${one}`), chooseLight),
+      chosen("settings-keypad", "keypad", KEYPADS, keypad(), (one) => say(`keypad-${one}`), chooseKeypad),
       chosen(
         "settings-language",
         "language",

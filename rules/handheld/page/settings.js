@@ -2,8 +2,10 @@
 import { LANGUAGES, speak, spoken } from "./texts.js";
 
 export const LIGHTS = ["auto", "light", "dark", "sun"];
-const LANGUAGE = "precontact-language",
-  LIGHT = "precontact-light";
+export const KEYPADS = ["letters", "digits"];
+const LANGUAGE = "precontact-language";
+const LIGHT = "precontact-light";
+const KEYPAD = "precontact-keypad";
 
 function remembered(key) {
   try {
@@ -36,6 +38,12 @@ export function chooseLight(chosen) {
   remember(LIGHT, chosen);
   document.documentElement.dataset.light = chosen;
 }
+
+/** How numbers are typed: "letters", or "digits" for a keypad of large digits, on which a glove hits better. */
+export const keypad = () => (remembered(KEYPAD) === "digits" ? "digits" : "letters");
+
+/** Choose how numbers are typed. */
+export const chooseKeypad = (chosen) => remember(KEYPAD, chosen);
 
 /** Choose the language; whether it is another one. */
 export function chooseLanguage(chosen) {

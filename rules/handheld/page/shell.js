@@ -15,7 +15,7 @@ const header = document.querySelector("header"),
   footer = document.querySelector("footer");
 const skip = document.querySelector(".skip");
 
-const VIEWS = { check: checkView, answer: recordView, recent: recentView, "rule-set": ruleSetView, "": homeView };
+const VIEWS = { "check": checkView, "answer": recordView, "recent": recentView, "rule-set": ruleSetView, "": homeView };
 let shownRoute = null;
 
 const route = () => location.hash.replace(/^#\/?/, "").split("/").map(decodeURIComponent);
@@ -38,7 +38,7 @@ async function show({ keepFocus = false } = {}) {
 }
 
 function drawFrame(name) {
-  const link = (to, key) => make("a", { href: `#/${to}`, "aria-current": (name || "") === to ? "page" : undefined }, say(key));
+  const link = (to, key) => make("a", { "href": `#/${to}`, "aria-current": (name || "") === to ? "page" : undefined }, say(key));
   const other = spoken() === "en" ? "es" : "en";
   const sun = button(
     "☀",
@@ -47,7 +47,7 @@ function drawFrame(name) {
       drawFrame(name);
       header.querySelector(".sun").focus();
     },
-    { class: "tool sun", "aria-pressed": String(light() === "sun"), "aria-label": say("light-sun") },
+    { "class": "tool sun", "aria-pressed": String(light() === "sun"), "aria-label": say("light-sun") },
   );
   const language = button(
     other.toUpperCase(),
@@ -56,7 +56,7 @@ function drawFrame(name) {
       await show({ keepFocus: true });
       header.querySelector(".language").focus();
     },
-    { class: "tool language", lang: other, "aria-label": other === "es" ? "Español" : "English" },
+    { "class": "tool language", "lang": other, "aria-label": other === "es" ? "ES: Español" : "EN: English" },
   );
   fill(
     header,
@@ -70,6 +70,7 @@ function drawFrame(name) {
       make("nav", { "aria-label": say("views") }, link("", "nav-checks"), link("recent", "nav-recent"), link("rule-set", "nav-rule-set")),
   );
   skip.textContent = say("skip");
+  notices.setAttribute("aria-label", say("notices"));
   drawState();
 }
 

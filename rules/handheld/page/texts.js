@@ -27,5 +27,8 @@ export const canSay = (key) => key in LANGUAGES[language];
 /** A text of the rule set, {en, es}. */
 export const ofRules = (text) => text[language];
 
+/** The form of dates and times: the device's own, where it is of that language. */
+export const locale = () => (navigator.language.startsWith(language) ? navigator.language : language);
+
 /** Text to begin a line with. */
 export const capital = (text) => text.charAt(0).toLocaleUpperCase(language) + text.slice(1);

@@ -6,10 +6,10 @@
 /** Power of ten of each prefix. K is not the SI's letter, but it is what keyboards produce for kilo. */
 export const PREFIXES = { p: -12, n: -9, u: -6, µ: -6, μ: -6, m: -3, k: 3, K: 3, M: 6, G: 9, T: 12 };
 
-const PREFIX_OF = { "-12": "p", "-9": "n", "-6": "µ", "-3": "m", 3: "k", 6: "M", 9: "G", 12: "T" };
+const PREFIX_OF = { "-12": "p", "-9": "n", "-6": "µ", "-3": "m", "3": "k", "6": "M", "9": "G", "12": "T" };
 const LETTERS = Object.keys(PREFIXES).join("");
 // The written signs that stand for a unit beside its own symbol, by symbol.
-const ALSO_WRITTEN = { Ω: ["ohmios", "ohmio", "ohms", "ohm", "R"], "°C": ["C"], "°": ["deg"], "1/K": ["/K"], "1/Ω": ["S"] };
+const ALSO_WRITTEN = { "Ω": ["ohmios", "ohmio", "ohms", "ohm", "R"], "°C": ["C"], "°": ["deg"], "1/K": ["/K"], "1/Ω": ["S"] };
 // A unit's letter in the place of the decimal mark: 4R7, 3V3.
 const AS_MARK = { Ω: "RΩ", V: "V" };
 const LONGEST = 40;
