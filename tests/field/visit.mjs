@@ -1,8 +1,8 @@
 /**
  * One visit to the field page, at phone size and by keyboard: node visit.mjs CHROMIUM PYTHON FOLDER [PICTURES]
  *
- * First online; then the server's process is killed, the page reloaded, and everything else happens without a network. What was seen is printed as JSON:
- * the tests read it. PICTURES is a folder for screenshots of every view.
+ * First online; then the server's process is killed, the page reloaded, and everything else happens without a network. What was seen is
+ * printed as JSON: the tests read it. PICTURES is a folder for screenshots of every view.
  */
 import { spawn } from "node:child_process";
 import { once } from "node:events";
@@ -185,6 +185,23 @@ for (const language of ["en", "es"]) {
     await barriers.look(named("rule-set"));
   }
 }
+
+// Large digits for gloves: the prefix is picked beside the number.
+await page.evaluate(() => {
+  localStorage.clear();
+  localStorage.setItem("precontact-keypad", "digits");
+});
+await reload();
+await open("#/check/loading-error", "form");
+await typist.press("Empty the form");
+await typist.fill("/circuit", { option: "thevenin" });
+await typist.fill("/source/resistance_ohm", "4.7");
+await typist.pick("/source/resistance_ohm", "prefix", "k");
+seen.digits = await page.evaluate(() => ({
+  keypad: document.getElementById("at/source/resistance_ohm").inputMode,
+  read: document.getElementById("at/source/resistance_ohm:read").textContent,
+}));
+await barriers.look("large-digits");
 await page.evaluate(() => localStorage.clear());
 await reload();
 

@@ -80,18 +80,16 @@ async function renew() {
 let renewing = Promise.resolve();
 const renewInTurn = () => (renewing = renewing.catch(() => {}).then(renew));
 
-addEventListener("install", (event) => event.waitUntil(renewInTurn().then(() => skipWaiting())));
+/** Tell the open pages that they show an older state than the one that the next visit gets. */
+async function tell(changed) {
+  if (changed) for (const client of await clients.matchAll({ includeUncontrolled: true })) client.postMessage({ page: "renewed" });
+}
+
+addEventListener("install", (event) => event.waitUntil(renewInTurn().then(tell).then(() => skipWaiting())));
 addEventListener("activate", (event) => event.waitUntil(clients.claim()));
 
-// The page asks once when it opens with a network: is there a newer state of its files?
-addEventListener("message", (event) => {
-  event.waitUntil(
-    renewInTurn().then(
-      (changed) => event.source.postMessage({ page: changed ? "renewed" : "current" }),
-      () => event.source.postMessage({ page: "unreachable" }),
-    ),
-  );
-});
+// The page asks once when it opens: is there a newer state of its files? Without a network there is none.
+addEventListener("message", (event) => event.waitUntil(renewInTurn().then(tell, () => {})));
 
 addEventListener("fetch", (event) => {
   const { request } = event,

@@ -7,7 +7,7 @@ export const session = {
   rules: null, // what the desk opened: {data, version, digest, proof, ...}
   update: null, // what the last update did
   refusal: null, // why there is no rule set
-  kept: "waiting", // the page's own files: "waiting", "kept", "renewed", "impossible"
+  kept: navigator.serviceWorker?.controller ? "kept" : "waiting", // the page's own files: "waiting", "kept", "renewed", "impossible"
   unsaved: null, // an answer that the device could not keep
 };
 
@@ -82,7 +82,8 @@ export async function keepPage() {
     return changed("kept");
   }
   navigator.serviceWorker.addEventListener("message", ({ data }) => {
-    if (data.page === "renewed") session.kept = "renewed";
+    if (data.page !== "renewed") return;
+    session.kept = "renewed";
     changed("kept");
   });
   try {
