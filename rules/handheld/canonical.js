@@ -7,7 +7,7 @@ const hex = (bytes) => Array.from(bytes, (b) => b.toString(16).padStart(2, "0"))
 /** RFC 8785 text of JSON data. A member that is undefined is not there. @param {unknown} data @returns {string} */
 export function canonicalText(data) {
   if (Array.isArray(data)) return `[${data.map(canonicalText)}]`;
-  if (data === null || typeof data !== "object") return JSON.stringify(data);
+  if (data === null || typeof data !== "object") return JSON.stringify(data ?? null);
   return `{${Object.keys(data).sort().filter((k) => data[k] !== undefined).map((k) => `${JSON.stringify(k)}:${canonicalText(data[k])}`)}}`;
 }
 

@@ -1,7 +1,7 @@
 /** Reading one number of a request: plain, or with a spread, checked against its declared range and brought to SI. */
 import { escaped, isObject, problem, shown } from "./problems.js";
 
-export const EXACT_WHOLE = 2 ** 53;
+export const EXACT_WHOLE = Number.MAX_SAFE_INTEGER;
 const SPREADS = ["half_width", "half_width_percent", "standard_uncertainty"];
 const FORMS = "a number, {value, half_width}, {value, half_width_percent}, {value, standard_uncertainty} or {between: [low, high]}";
 const BOUNDS = [["above", "above"], ["least", "at least"], ["below", "below"], ["most", "at most"]];
@@ -16,13 +16,13 @@ export const entryNumber = ({ value, half_width, standard_uncertainty }) =>
   (half_width ? uncertain("r", value, half_width) : uncertain("n", value, standard_uncertainty ?? 0));
 
 /** The declared range in words, in the field's own unit. */
-const rangeText = (field) => BOUNDS.filter(([key]) => key in field).map(([key, said]) => `${said} ${field[key]}`).join(" and ") || "between -2^53 and 2^53";
+const rangeText = (field) => BOUNDS.filter(([key]) => key in field).map(([key, said]) => `${said} ${field[key]}`).join(" and ") || `between -${EXACT_WHOLE} and ${EXACT_WHOLE}`;
 
 /** The reader for one number field: read(x, problems, pointer) -> a number or {form, value, size} in SI, or null after a problem. */
 export function numberReader({ field, factor }) {
   const unit = words(field.unit), { least, above, most, below } = field, allowed = field.uncertain ? FORMS : "a number";
   const inRange = (x) => (least !== undefined ? x >= least : above !== undefined ? x > above : x >= -EXACT_WHOLE)
-    && (most !== undefined ? x <= most : below !== undefined ? x < below : x <= EXACT_WHOLE) && x - x === 0;
+    && (most !== undefined ? x <= most : below !== undefined ? x < below : x <= EXACT_WHOLE);
 
   const badNumber = (x, pointer) => (x - x === 0 ? problem(pointer, "out-of-range", `${shown(x)} ${unit} is outside the range; it must be ${rangeText(field)}`)
     : problem(pointer, "not-finite", `${x} is not a finite number; give one in ${unit}`));
@@ -30,7 +30,7 @@ export function numberReader({ field, factor }) {
   /** A member of a spread form, in the field's own unit. */
   function plain(x, problems, pointer, fits, what) {
     if (typeof x !== "number") problems.push(problem(pointer, x === undefined || x === null ? "missing" : "wrong-type", `${shown(x ?? null)} is not a number; give ${what}`));
-    else if (!fits(x)) problems.push(what === "the value" ? badNumber(x, pointer) : problem(pointer, "out-of-range", `${shown(x)} is not possible here; ${what} is between 0 and 2^53`));
+    else if (!fits(x)) problems.push(what === "the value" ? badNumber(x, pointer) : problem(pointer, "out-of-range", `${shown(x)} is not possible here; ${what} is between 0 and ${EXACT_WHOLE}`));
     else return x + 0;
     return null;
   }

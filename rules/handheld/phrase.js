@@ -2,6 +2,7 @@
 
 const PREFIXES = ["p", "n", "µ", "m", "", "k", "M", "G"];      // from 10^-12 on, in thousands
 const NO_VALUE = { en: "(no value)", es: "(sin valor)" };
+const LATIN = "\u017f";      // up to here no Unicode version gives a letter another capital than the others do
 const AND = { en: " and ", es: " y " };
 
 /** A number in SI with its unit, to four significant digits: "2.497 MΩ", "-7.7 %". @param {number | null} value */
@@ -41,7 +42,7 @@ export const namesIn = (text) => template(text).filter((part) => part.name).map(
 /** The sentence; words(name) and listed(name, condition) supply what stands in its places. */
 export function filled(parts, words, listed, language) {
   const [first = "", ...rest] = parts.map((part) => (part.name === undefined ? part : part.condition ? joined(listed(part.name, part.condition), language) : words(part.name))).join("");
-  return first.toUpperCase() + rest.join("");      // it may begin with a name
+  return (first <= LATIN ? first.toUpperCase() : first) + rest.join("");      // it may begin with a name
 }
 
 /** Names as a list in a sentence: "a, b and c". */

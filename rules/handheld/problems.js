@@ -23,8 +23,8 @@ const isWhole = (text) => !/[\ud800-\udfff]/u.test(text);      // no half of a s
 function held(value, depth = 0) {
   if (typeof value === "number") return value - value === 0;
   if (typeof value === "string") return isWhole(value);
-  return typeof value !== "object" || value === null
-    || (depth < DEEPEST && Object.keys(value).every(isWhole) && Object.values(value).every((v) => held(v, depth + 1)));
+  if (typeof value !== "object" || value === null) return typeof value === "boolean" || value === undefined || value === null;
+  return depth < DEEPEST && Object.keys(value).every(isWhole) && Object.values(value).every((v) => held(v, depth + 1));
 }
 
 /** A value as it is quoted in a message: canonical JSON, shortened; what JSON cannot hold, or holds too deep, is not written out. */

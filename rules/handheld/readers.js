@@ -3,9 +3,9 @@ import { EXACT_WHOLE, numberReader } from "./numbers.js";
 import { problem, shown } from "./problems.js";
 
 // Controls, spaces other than the plain one, the soft hyphen, marks that are not seen or change the direction of text, separators of lines,
-// surrogates, private use, noncharacters.
+// surrogates, private use, the noncharacters of the basic plane.
 const NOT_PRINTED = new RegExp("[\\0-\\x1f\\x7f-\\xa0\\xad\\u061c\\u1680\\u180e\\u2000-\\u200f\\u2028-\\u202f\\u205f-\\u206f\\u3000\\ud800-\\uf8ff"
-  + "\\ufdd0-\\ufdef\\ufeff\\ufff0-\\uffff\\u{e0000}-\\u{10ffff}]", "u");
+  + "\\ufdd0-\\ufdef\\ufeff\\ufff0-\\ufffb\\ufffe\\uffff\\u{e0000}-\\u{10ffff}]", "u");
 
 const isPoint = (p) => Array.isArray(p) && p.length === 2 && p.every((c) => typeof c === "number" && Math.abs(c) <= EXACT_WHOLE);
 

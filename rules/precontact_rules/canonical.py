@@ -6,6 +6,7 @@ writer used.
 """
 import hashlib
 import json
+import math
 import re
 
 _LAID_OUT_OTHERWISE = re.compile(r"\d\.0(?![\d])|\d[eE][-+]?\d|(?<![\d.])\d{16}|[\ud800-\U0010ffff]")
@@ -24,6 +25,14 @@ def canonical_bytes(data):
 def digest(data):
     """SHA-256 of the canonical bytes: "sha-256:" and 64 hexadecimal digits."""
     return "sha-256:" + hashlib.sha256(canonical_bytes(data)).hexdigest()
+
+
+def as_binary64(number):
+    """A number as a reader of JSON has it that knows binary64 only: the nearest, infinite where there is none."""
+    try:
+        return float(number)
+    except OverflowError:
+        return math.inf if number > 0 else -math.inf
 
 
 def _written(value):

@@ -3,7 +3,7 @@
 Everything here is read from the bundle's declaration, the same that the validator is compiled from: what the schema admits is accepted, what it
 refuses is refused.
 """
-EXACT_WHOLE = 2 ** 53
+from .numbers import EXACT_WHOLE
 
 
 def components(bundle):

@@ -1,10 +1,10 @@
 """Reading one number of a request: plain, or with a spread, checked against its declared range and brought to SI."""
 import math
 
-from .canonical import number_as_ecmascript
+from .canonical import as_binary64, number_as_ecmascript
 from .problems import Problem, in_order, shown
 
-EXACT_WHOLE = 2 ** 53      # beyond it not every whole number is a binary64; nothing on a test bench is larger
+EXACT_WHOLE = 2 ** 53 - 1      # up to here every reader of JSON has the same whole numbers (RFC 7493, 2.2); nothing on a test bench is larger
 SPREADS = ("half_width", "half_width_percent", "standard_uncertainty")
 _FORMS = "a number, {value, half_width}, {value, half_width_percent}, {value, standard_uncertainty} or {between: [low, high]}"
 
@@ -28,7 +28,7 @@ def number_reader(slot):
     def read(x, problems, pointer):
         kind = type(x)
         if kind is float or kind is int:
-            if low <= x <= high and -math.inf < x < math.inf and (kind is float or -EXACT_WHOLE <= x <= EXACT_WHOLE):
+            if low <= x <= high:
                 return x * factor + 0.0        # + 0.0 turns a negative zero into zero
             problems.append(bad_number(x, pointer))
         elif kind is dict and uncertain:
@@ -41,20 +41,18 @@ def number_reader(slot):
         return None
 
     def bad_number(x, pointer):
-        if x != x or x in (math.inf, -math.inf):
-            found = "NaN" if x != x else "Infinity" if x > 0 else "-Infinity"
-            return Problem(pointer, "not-finite", f"{found} is not a finite number; give one in {unit}")
-        if not low <= x <= high:
+        if -math.inf < as_binary64(x) < math.inf:
             return Problem(pointer, "out-of-range", f"{shown(x)} {unit} is outside the range; it must be {range_text(field)}")
-        return Problem(pointer, "out-of-range", f"{shown(x)} has more digits than a binary64 number holds; whole numbers reach 2^53")
+        found = "NaN" if x != x else "Infinity" if x > 0 else "-Infinity"
+        return Problem(pointer, "not-finite", f"{found} is not a finite number; give one in {unit}")
 
     def plain(x, problems, pointer, least, most, what):
         """A member of a spread form: a number between least and most, in the field's own unit."""
         if type(x) not in (float, int):
             problems.append(Problem(pointer, "wrong-type" if x is not None else "missing", f"{shown(x)} is not a number; give {what}"))
-        elif not least <= x <= most or abs(x) == math.inf or (type(x) is int and abs(x) > EXACT_WHOLE):
+        elif not least <= x <= most:
             problems.append(bad_number(x, pointer) if what == "the value" else
-                            Problem(pointer, "out-of-range", f"{shown(x)} is not possible here; {what} is between 0 and 2^53"))
+                            Problem(pointer, "out-of-range", f"{shown(x)} is not possible here; {what} is between 0 and {EXACT_WHOLE}"))
         else:
             return x + 0.0
         return None
@@ -64,7 +62,7 @@ def number_reader(slot):
         given = [key for key in SPREADS if key in x]
         unknown = in_order(key for key in x if key not in SPREADS and key not in ("value", "between"))
         if unknown:
-            problems.append(Problem(f"{pointer}/{_escaped(unknown[0])}", "unknown-field", f"{shown(unknown[0])} is not part of an uncertain number; it is {_FORMS}"))
+            problems.append(Problem(f"{pointer}/{escaped(unknown[0])}", "unknown-field", f"{shown(unknown[0])} is not part of an uncertain number; it is {_FORMS}"))
         elif len(given) + ("between" in x) > 1:
             names = " and ".join(given + ["between"] * ("between" in x))
             problems.append(Problem(pointer, "two-spreads", f"{names} are given together; one number has one spread"))
@@ -108,8 +106,9 @@ def range_text(field):
     for key, words in (("above", "above"), ("least", "at least"), ("below", "below"), ("most", "at most")):
         if key in field:
             parts.append(f"{words} {number_as_ecmascript(field[key])}")
-    return " and ".join(parts) or "between -2^53 and 2^53"
+    return " and ".join(parts) or f"between -{EXACT_WHOLE} and {EXACT_WHOLE}"
 
 
-def _escaped(key):
+def escaped(key):
+    """The key as a token of a JSON pointer (RFC 6901)."""
     return str(key).replace("~", "~0").replace("/", "~1")

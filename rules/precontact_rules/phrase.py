@@ -4,6 +4,7 @@ import re
 from decimal import ROUND_HALF_UP, Decimal
 
 DIGITS = 4
+_LATIN = "\u017f"      # up to here no Unicode version gives a letter another capital than the others do
 _PREFIXES = {-12: "p", -9: "n", -6: "µ", -3: "m", 0: "", 3: "k", 6: "M", 9: "G"}
 _NO_VALUE = {"en": "(no value)", "es": "(sin valor)"}
 _AND = {"en": " and ", "es": " y "}
@@ -90,7 +91,8 @@ def fill(template, reader, language):
         else:
             filled.append(joined(reader.listed(*content), language))
     sentence = "".join(filled)
-    return sentence[:1].upper() + sentence[1:]     # it may begin with a name
+    first = sentence[:1]      # it may begin with a name
+    return (first.upper() if first <= _LATIN else first) + sentence[1:]
 
 
 def joined(names, language):

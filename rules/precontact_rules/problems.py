@@ -1,9 +1,10 @@
 """What is wrong with a request, item by item."""
+import math
 from typing import NamedTuple
 
-from .canonical import canonical_bytes
+from .canonical import as_binary64, canonical_bytes
 
-_LONGEST, _DEEPEST, _MOST = 60, 32, 1.7976931348623157e308
+_LONGEST, _DEEPEST = 60, 32
 
 
 class Problem(NamedTuple):
@@ -38,7 +39,7 @@ def shown(value):
 def _held(value, depth):
     kind = type(value)
     if kind in (int, float):
-        return abs(value) <= _MOST
+        return -math.inf < as_binary64(value) < math.inf
     if kind is str:
         return value.isascii() or _is_whole(value)
     if kind in (list, dict):

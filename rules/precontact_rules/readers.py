@@ -6,9 +6,9 @@ from .numbers import EXACT_WHOLE, number_reader
 from .problems import Problem, shown
 
 # Controls, spaces other than the plain one, the soft hyphen, marks that are not seen or change the direction of text, separators of lines,
-# surrogates, private use, noncharacters: written out, since what Python calls printable changes with its version.
+# surrogates, private use, the noncharacters of the basic plane: written out, since what a runtime calls printable changes with its Unicode version.
 _NOT_PRINTED = re.compile("[\0-\x1f\x7f-\xa0\xad\u061c\u1680\u180e\u2000-\u200f\u2028-\u202f\u205f-\u206f\u3000\ud800-\uf8ff"
-                          "\ufdd0-\ufdef\ufeff\ufff0-\uffff\U000e0000-\U0010ffff]")
+                          "\ufdd0-\ufdef\ufeff\ufff0-\ufffb\ufffe\uffff\U000e0000-\U0010ffff]")
 
 
 def reader(field, slot):

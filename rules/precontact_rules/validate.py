@@ -4,7 +4,7 @@ The validator is compiled once per check from the bundle's own declaration, the 
 reference tables are made from.
 """
 from .declaration import Check
-from .numbers import entry_number
+from .numbers import entry_number, escaped
 from .problems import InputProblems, Problem, in_order, shown
 from .readers import columns, reader
 
@@ -89,8 +89,7 @@ def _compiled(node, bundle):
 
 def _unknown(body, keys, problems, pointer):
     for key in in_order(body.keys() - keys):
-            problems.append(Problem(f"{pointer}/{key.replace('~', '~0').replace('/', '~1')}", "unknown-field",
-                                    f"{shown(key)} is not known here; the members are {', '.join(sorted(keys))}"))
+        problems.append(Problem(f"{pointer}/{escaped(key)}", "unknown-field", f"{shown(key)} is not known here; the members are {', '.join(sorted(keys))}"))
 
 
 def _applies(field, run, given, pointer):

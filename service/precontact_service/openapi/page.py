@@ -2,6 +2,8 @@
 import json
 import shlex
 
+from precontact_rules.numbers import EXACT_WHOLE
+
 
 def view(document):
     """Template values."""
@@ -89,6 +91,6 @@ def _form(member):
 def _range(schema):
     parts = []
     for keyword, words in (("minimum", "at least"), ("exclusiveMinimum", "above"), ("maximum", "at most"), ("exclusiveMaximum", "below")):
-        if keyword in schema and abs(schema[keyword]) < 2 ** 53:
+        if keyword in schema and abs(schema[keyword]) < EXACT_WHOLE:
             parts.append(f"{words} {schema[keyword]:g}")
     return " " + " and ".join(parts) if parts else ""
