@@ -10,6 +10,8 @@ const { chromium } = createRequire(join(HARNESS, "tools", "package.json"))("play
 const TYPES = { ".js": "text/javascript", ".json": "application/json", ".html": "text/html" };
 /** No inline script, no eval, no text that becomes code, nothing from elsewhere. */
 const POLICY = "default-src 'none'; script-src 'self'; connect-src 'self'; base-uri 'none'; form-action 'none'; require-trusted-types-for 'script'";
+/** Only a page that is isolated from others may read the time finely. */
+const ISOLATED = { "Cross-Origin-Opener-Policy": "same-origin", "Cross-Origin-Embedder-Policy": "require-corp" };
 
 /** Serve /runtime/ and /harness/ from folders, and what `answers` has: {path: (request body, rest of the path) => text or bytes}. */
 async function served(runtimeFolder, answers) {
@@ -22,7 +24,7 @@ async function served(runtimeFolder, answers) {
       const made = answers[pathname] ?? answers[`/${first}/`];
       const content = made ? await made(body, rest.join("/")) : await readFile(join(folders[first], normalize(rest.join("/"))));
       const type = TYPES[extname(pathname)] ?? "application/octet-stream";
-      response.writeHead(200, { "Content-Type": type, "Content-Security-Policy": POLICY, "Cache-Control": "no-store" });
+      response.writeHead(200, { "Content-Type": type, "Content-Security-Policy": POLICY, "Cache-Control": "no-store", ...ISOLATED });
       response.end(content);
     } catch (error) {
       response.writeHead(404).end(String(error));

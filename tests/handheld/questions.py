@@ -11,7 +11,7 @@ from typing import NamedTuple
 from .drawing import Drawing, stated
 from .faults import faulty
 
-ALIKE = 5               # questions of one shape
+ALIKE = 6               # questions of one shape
 DIMENSIONS = 60         # so many uncertain numbers a question has at most: the lattice has 64
 
 
