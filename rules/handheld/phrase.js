@@ -7,9 +7,10 @@ const AND = { en: " and ", es: " y " };
 
 /** A number in SI with its unit, to four significant digits: "2.497 MΩ", "-7.7 %". @param {number | null} value */
 export function numberText(value, unit, units, language) {
-  const { factor, prefixes, symbol } = units[unit], own = value === null ? NaN : value / factor;
-  if (own - own !== 0) return NO_VALUE[language];
-  let [mantissa, power] = Math.abs(own).toExponential(3).split("e"), exponent = +power, prefix = "";
+  if (value === null || value - value !== 0) return NO_VALUE[language];
+  const { factor, prefixes, symbol } = units[unit], own = value / factor;
+  if (own - own !== 0) return NO_VALUE[language];      // finite in SI, but not in its own unit
+  let [mantissa, power] = rounded(Math.abs(own)).split("e"), exponent = +power, prefix = "";
   if (prefixes && own) {
     const thousands = Math.min(Math.max(Math.floor(exponent / 3), -4), 3);
     prefix = PREFIXES[thousands + 4];
@@ -18,6 +19,12 @@ export function numberText(value, unit, units, language) {
   const digits = mantissa.replace(".", "").replace(/0+$/, "") || "0", text = laidOut(digits, exponent), unitText = prefix + symbol;
   const written = language === "es" ? text.replace(".", ",") : text;
   return (own < 0 && digits !== "0" ? "-" : "") + written + (unitText ? `\u00a0${unitText}` : "");
+}
+
+/** To four digits, half up on the exact binary value; not every engine turns a tie upwards as ECMA-262 has it, so a tie is first moved up a little. */
+function rounded(x) {
+  const five = x.toExponential(4).split("5e"), tie = five.length > 1 && x.toExponential(40).startsWith(`${five[0]}5${"0".repeat(36)}e`);
+  return (tie ? x * (1 + 2 ** -40) : x).toExponential(3);
 }
 
 function laidOut(digits, exponent) {

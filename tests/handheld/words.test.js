@@ -45,6 +45,18 @@ test("quantities have Python's characters", () => {
   }
 });
 
+test("ties go up in an engine that would turn them to the even digit too", () => {
+  const own = Number.prototype.toExponential, even = { 10005: "1.000e+4", 0.25: "2.500e-1", 1000.5: "1.000e+3" };
+  try {
+    Number.prototype.toExponential = function toExponential(digits) {
+      return digits === 3 && Object.hasOwn(even, this) ? even[this] : own.call(this, digits);
+    };
+    assert.deepEqual([10005, 0.25, 1000.5].map((x) => numberText(x, "ratio", bundle.units, "en")), ["10010", "0.25", "1001"]);
+  } finally {
+    Number.prototype.toExponential = own;
+  }
+});
+
 test("any value is quoted as Python quotes it", () => {
   for (const { value, shown: quoted, canonical } of lines("quoted.jsonl")) {
     assert.equal(shown(value), quoted);

@@ -59,6 +59,7 @@ def _value(value):
 
 def _quantities(bundle):
     rng, units = random.Random(1), bundle["units"]
+    yield json.dumps([None, None, "es", number_text(None, None, units, "es")])
     for unit in sorted(units):
         values = [None, 0.0, -0.0, math.inf, math.nan, 5e-324, -1.7976931348623157e308, 999.95, 99995.0, 9999.5]
         for _ in range(NUMBERS):
