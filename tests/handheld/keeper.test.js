@@ -192,6 +192,10 @@ test("on a first installation a check that disagrees is blocked, and nothing is 
   assert.equal((await keeperOf(store, server).update()).state, "installed");
   const { ruleSet, proof } = await keeperOf(store, server).start();
   assert.deepEqual([[...ruleSet.blocked.keys()], proof.agree, proof.of], [[INDUCED], 2, 3]);
+  const another = new MemoryStore();      // only a later case of a check disagrees: no start forgets it
+  server.publish(bundle("1.0.0", (data) => (data.cases[1].answer.verdict = "never-heard-of")));
+  await keeperOf(another, server).update();
+  for (let again = 0; again < 2; again++) assert.deepEqual([...(await keeperOf(another, server).start()).ruleSet.blocked.keys()], [LOADING]);
 });
 
 test("all is proved once for each engine; later starts prove one of each check, and all again where that disagrees", async () => {
