@@ -1,5 +1,6 @@
 """The handheld runtime says what the Python engine says: to generated questions and every worked case, in Node and in a browser, to the last bit."""
 import json
+import shutil
 
 import pytest
 
@@ -71,10 +72,15 @@ def worked(released_set, tmp_path_factory):
 
 
 @pytest.fixture(scope="module")
-def example(tmp_path_factory):
-    """The language's own example rule set: it uses what no released check does."""
-    rule_set = RuleSet(canonical(build(EXAMPLE)[0]))
-    return Written(rule_set, tmp_path_factory.mktemp("example"), questions(rule_set.data, {"demo": 600}))
+def language(tmp_path_factory):
+    """The example of the rule language, and a check that uses all that the language has."""
+    source = tmp_path_factory.mktemp("language") / "source"
+    for folder in (EXAMPLE, HERE / "language"):
+        shutil.copytree(folder, source, dirs_exist_ok=True)
+    bundle, faults, _ = build(source)
+    assert not faults, "\n".join(map(str, sorted(faults)))
+    rule_set = RuleSet(canonical(bundle))
+    return Written(rule_set, source.parent, questions(bundle, {"demo": 300, "whole": 250}))
 
 
 @pytest.mark.parametrize("script", SCRIPTS)
@@ -90,8 +96,8 @@ def test_every_worked_case_in_both_languages(worked, run_script, script):
 
 
 @pytest.mark.parametrize("script", SCRIPTS)
-def test_the_example_of_the_language(example, run_script, script):
-    assert_equal(example, run_script(script, RUNTIME, example.bundle, example.path))
+def test_the_whole_language(language, run_script, script):
+    assert_equal(language, run_script(script, RUNTIME, language.bundle, language.path))
 
 
 def test_the_questions_reach_the_rules(generated, worked):
