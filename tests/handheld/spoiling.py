@@ -2,6 +2,8 @@
 import copy
 import json
 
+from .drawing import bounds
+
 INFINITE = "1e999"      # JSON text that every reader takes for an infinite number
 NUMBERS = (0, -0.0, 1, -1, 0.5, 100, 1e-7, 1e-5, 15, 60, 0.1, 1 / 3, 1e21, 1e22, 123456789012345680.0, 1000000000000000.1, 5e-324,
            1.7976931348623157e308, -1.7976931348623157e308, 2 ** 53 - 1, 2 ** 53, 2 ** 53 + 1, -2 ** 53, -2 ** 53 - 1, 2 ** 63, 2 ** 64 + 1,
@@ -108,6 +110,22 @@ class Spoiler:
             if rng.random() < 0.6:
                 made.pop("value", None)
         return made
+
+    def value(self, field):
+        """A value of the kind of a field, or nearly: most numbers in its range, plain and with spreads, texts and curves of all lengths."""
+        rng, kind = self.rng, field["kind"]
+        if rng.random() < 0.1:
+            return self.anything()
+        if kind == "number":
+            low, high = bounds(field)
+            number = rng.choice([low, high, 0, 1, 0.1, rng.random() * min(high, 1e6), rng.choice(NUMBERS), min(max(rng.gauss(0, 1e3), low), high)])
+            return number if rng.random() < 0.3 or abs(number) > 1e300 else self._spread(number)
+        if kind == "choice":
+            return rng.choice([choice["key"] for choice in field["choices"]])
+        if kind == "curve":
+            odd = rng.choice(NUMBERS) if rng.random() < 0.3 else 50
+            return [[rng.choice([1, 2.5, 60, odd]), rng.random()] for _ in range(rng.choice([0, 1, 2, 3, 5, 64, 65]))]
+        return self._text() if kind == "text" else rng.random() < 0.5
 
     def _text(self):
         return "".join(self.rng.choice(LETTERS) for _ in range(self.rng.choice([1, 1, 2, 3, 5, 30, 59, 60, 61, 90])))

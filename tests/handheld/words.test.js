@@ -6,9 +6,11 @@ import { join } from "node:path";
 import { test } from "node:test";
 import { RuleSet, InputProblems } from "../../rules/handheld/index.js";
 import { canonicalText, digest } from "../../rules/handheld/canonical.js";
+import { declaredInputs } from "../../rules/handheld/declaration.js";
 import { compileIntake } from "../../rules/handheld/intake.js";
 import { filled, namesIn, numberText, template } from "../../rules/handheld/phrase.js";
 import { shown } from "../../rules/handheld/problems.js";
+import { reader } from "../../rules/handheld/readers.js";
 import { sha256 } from "../../rules/handheld/sha256.js";
 
 const folder = process.env.WORDS;
@@ -37,6 +39,27 @@ test("bodies spoiled in every way are read as Python reads them, and refused wit
     const given = JSON.stringify(body).slice(0, 3000);
     assert.deepEqual(read(intakes.get(check), frozen(body)), made, `${check} ${given}`);
   }
+});
+
+test("every field reads any value of its kind as Python does", () => {
+  const declared = new Map(Object.keys(bundle.checks).map((check) => [check, declaredInputs(bundle, check).slots]));
+  for (const { check, slot, branch, given, made } of lines("fields.jsonl")) {
+    const { field, ...rest } = declared.get(check)[slot], problems = [];
+    const value = reader(field, { field, ...rest })(given, { problems, branch }, "/x");
+    assert.deepEqual({ value, problems }, made, `${check} ${rest.path} ${JSON.stringify(given)}`);
+  }
+});
+
+test("the same characters are refused in a text", () => {
+  const { longest, refused } = lines("characters.jsonl")[0], fails = (text) => {
+    const problems = [];
+    reader({ kind: "text", longest })(text, { problems }, "");
+    return problems.length;
+  };
+  const found = [];
+  for (let point = 0; point < 0x110000; point++) if (fails(String.fromCodePoint(point))) found.push(point);
+  assert.deepEqual(found, refused);
+  for (const letter of ["a", "é", "𝒜"]) assert.deepEqual([fails(letter.repeat(longest)), fails(letter.repeat(longest + 1))], [0, 1]);
 });
 
 test("quantities have Python's characters", () => {
@@ -101,7 +124,13 @@ test("names of an object's own machinery are unknown fields, and leave no trace"
   assert.equal({}.polluted, undefined);
 });
 
-test("a member that is undefined is not there", () => {
-  const ruleSet = new RuleSet(new Uint8Array(readFileSync(join(folder, "bundle.json")))), { check, input } = ruleSet.data.cases[0];
-  assert.deepEqual(ruleSet.answer(check, { ...input, contact_time_second: undefined, nothing: undefined }), ruleSet.answer(check, input));
+test("a member that is undefined or inherited is not there", () => {
+  const ruleSet = new RuleSet(new Uint8Array(readFileSync(join(folder, "bundle.json"))));
+  for (const check of ruleSet.checkNames) {
+    const { input } = ruleSet.data.cases.find((c) => c.check === check);
+    const nothing = Object.fromEntries(bundle.checks[check].inputs.map(({ key }) => [key, undefined]));
+    assert.deepEqual(ruleSet.answer(check, { ...nothing, ...input, unknown: undefined }), ruleSet.answer(check, input));
+    const intake = compileIntake(bundle, check), heir = Object.create(input);
+    assert.deepEqual(read(intake, heir), read(intake, {}));
+  }
 });

@@ -4,19 +4,24 @@ import math
 import random
 
 from precontact_rules.canonical import canonical_bytes, digest
+from precontact_rules.declaration import Check
 from precontact_rules.phrase import Template, fill, number_text
 from precontact_rules.problems import InputProblems, shown
+from precontact_rules.readers import reader
 from precontact_rules.validate import compile_intake
 
 from .spoiling import Spoiler, text_of
 
-BODIES, NUMBERS, QUOTED = 2500, 400, 3000      # of each check, of each unit, in all
+BODIES, FIELDS, NUMBERS, QUOTED = 2500, 40, 400, 3000      # of each check, of each field, of each unit, in all
+LONGEST = 60
 
 
 def write(bundle, folder):
     """Writes the files; returns how many bodies are valid and the codes of the problems in the others."""
     found = {"valid": 0, "codes": set()}
     _write(folder / "intakes.jsonl", _intakes(bundle, found))
+    _write(folder / "fields.jsonl", _fields(bundle))
+    _write(folder / "characters.jsonl", [json.dumps({"longest": LONGEST, "refused": _refused()})])
     _write(folder / "quantities.jsonl", _quantities(bundle))
     _write(folder / "quoted.jsonl", _quoted(bundle))
     _write(folder / "sentences.jsonl", _sentences(bundle))
@@ -46,6 +51,35 @@ def _read(intake, body, found):
     found["valid"] += 1
     return {"states": list(run.states), "values": [_value(v) for v in run.values], "sizes": run.sizes, "assumed": run.assumed,
             "origins": run.origins, "titles": run.titles, "branch": run.branch, "digest": digest(body)}
+
+
+class _Run:
+    """What a reader of a field needs of an intake."""
+
+    def __init__(self, branch):
+        self.branch, self.problems = branch, []
+
+
+def _fields(bundle):
+    """Every field of every check on its own, given what is nearly right for its kind."""
+    rng = random.Random(4)
+    for check in sorted(bundle["checks"]):
+        spoiler, declared = Spoiler(bundle, check, rng), Check(bundle, check)
+        branches = next(field["choices"] for field, _, _ in declared.tree if field["name"] == declared.branch)
+        for slot in declared.slots:
+            read = reader(slot.field, slot)
+            for _ in range(FIELDS):
+                run, text = _Run(rng.choice([None, rng.choice(branches)["key"]])), text_of(spoiler.value(slot.field))
+                value = _value(read(json.loads(text), run, "/x"))
+                made = json.dumps({"value": value, "problems": [p._asdict() for p in run.problems]})
+                yield f'{{"check": "{check}", "slot": {slot.index}, "branch": {json.dumps(run.branch)}, "given": {text}, "made": {made}}}'
+
+
+def _refused():
+    """Code points that a text may not hold."""
+    run = _Run(None)
+    read = reader({"kind": "text", "longest": LONGEST}, None)
+    return [point for point in range(0x110000) if read(chr(point), run, "") is None]
 
 
 def _value(value):
