@@ -1,6 +1,7 @@
 """Numbers in sentences, and canonical JSON against the reference implementation of RFC 8785."""
 import math
 from decimal import ROUND_HALF_UP, Context, Decimal
+from types import SimpleNamespace
 
 import pytest
 import rfc8785
@@ -8,9 +9,12 @@ from hypothesis import given
 from hypothesis import strategies as st
 from precontact_rules.authoring.units import bundled
 from precontact_rules.canonical import canonical_bytes, digest
-from precontact_rules.phrase import _rounded, joined, number_text
+from precontact_rules.phrase import Template, _rounded, fill, joined, number_text
+from precontact_rules.problems import in_order, shown
+from precontact_rules.readers import reader
 
 UNITS = bundled()
+UNWRITTEN = "a value that cannot be written here"
 
 
 @pytest.mark.parametrize("value, unit, language, text", [
@@ -64,3 +68,46 @@ def test_awkward_numbers(number):
 
 def test_a_digest_does_not_depend_on_spelling():
     assert digest({"a": 1.0, "b": [2]}) == digest({"b": [2.0], "a": 1})
+
+
+@pytest.mark.parametrize("value, text", [
+    (1.0, "1"), (1e-7, "1e-7"), ({"b": 1, "a": [2.50, None]}, '{"a":[2.5,null],"b":1}'), (2 ** 70, "1.1805916207174113e+21"), (10 ** 400, UNWRITTEN),
+    (math.inf, UNWRITTEN), ("\ud800", UNWRITTEN), ({"\ud800": 1}, UNWRITTEN), ("𝒜" * 58, f'"{"𝒜" * 58}"'), ("𝒜" * 59, f'"{"𝒜" * 58}…')])
+def test_a_value_is_quoted_as_canonical_json_of_sixty_code_points(value, text):
+    assert shown(value) == text
+
+
+def test_a_value_too_deep_is_not_written_out():
+    deep = 1
+    for _ in range(32):
+        deep = [deep]
+    assert shown(deep).startswith("[[[") and shown([deep]) == UNWRITTEN
+
+
+def test_keys_have_the_order_of_utf_16():
+    assert in_order({"𝒜": 1, "\ue000": 2, "b": 3}) == ["b", "𝒜", "\ue000"]
+
+
+def read(field, value):
+    run = SimpleNamespace(problems=[], branch=None)
+    made = reader(field, SimpleNamespace(field=field, factor=1))(value, run, "/x")
+    return made if not run.problems else run.problems[0].detail
+
+
+@pytest.mark.parametrize("value, made", [
+    (2 ** 53 - 1, 9007199254740991.0), (2 ** 53, "9007199254740992 volt is outside the range; it must be between -9007199254740991 and 9007199254740991"),
+    (2 ** 53 + 1, "9007199254740992 volt is outside the range; it must be between -9007199254740991 and 9007199254740991"),
+    (-10 ** 400, "-Infinity is not a finite number; give one in volt"), (1e-9, 1e-9)])
+def test_whole_numbers_reach_as_far_as_every_reader_of_json_has_them(value, made):
+    assert read({"kind": "number", "unit": "volt"}, value) == made
+
+
+@pytest.mark.parametrize("letter, fine", [("é", True), ("𝒜", True), ("\ufffd", True), ("\u0378", True), ("\u00ad", False), ("\u202e", False), ("\u200b", False),
+                                          ("\n", False), ("\ue000", False), ("\uffff", False), ("\ud800", False)])
+def test_what_a_text_may_hold_does_not_hang_on_a_unicode_version(letter, fine):
+    assert (read({"kind": "text", "longest": 9}, letter) == letter) is fine
+
+
+@pytest.mark.parametrize("name, sentence", [("éa", "Éa"), ("ß", "SS"), ("ſa", "Sa"), ("ƛ", "ƛ"), ("აბ", "აბ"), ("𐐨", "𐐨"), ("", "")])
+def test_a_sentence_gets_the_capital_that_every_runtime_knows(name, sentence):
+    assert fill(Template("{name}"), SimpleNamespace(words=lambda _: name), "en") == sentence
