@@ -1,6 +1,6 @@
 """From the engine's numbers to the answer a person reads and a machine stores."""
 from .layout import Layout
-from .phrase import compile_template
+from .phrase import Template, quantity_writer
 from .reported import Reader
 
 # A note never decides; a mild finding is reported only where it decides.
@@ -20,17 +20,18 @@ class AnswerWriter:
         self._cautions = bundle["cautions"]
         self._kinds = [_KIND[f["verdict"]] for f in model.findings]
         self._listed = {}       # cautions and assumptions already written out, by what they are made of
-        self._templates = {}
+        self._quantities, self.templates = {}, {}
         for number, finding in enumerate(model.findings):
             for language, text in finding["sentence"].items():
-                self._templates[number, language] = compile_template(text)
+                self.templates[number, language] = Template(text)
 
     def write(self, intake, plan, results, intervals, beyond, input_digest, language):
         """The answer document. Its parts may be shared with other answers: to be read, not changed."""
         reader = Reader(self, intake, plan, results, intervals, language)
         decided, holding = self._decide(plan.live, results)
         verdict = self.model.findings[decided]["verdict"]
-        findings = [self._finding(number, reader, language) for number in holding]
+        layout = self._layout(plan, language)
+        findings = [layout.finding(number)(results, reader) for number in holding]
         weak = self._weak(plan, intake, decided) if verdict == "acceptable" else []
         if weak:
             verdict = "conditional"
@@ -39,7 +40,6 @@ class AnswerWriter:
             verdict = "undetermined"
             paths = [self.model.slots[index].path for index in beyond]
             findings.insert(0, self._engine_finding("spread-leaves-range", verdict, reader, paths))
-        layout = self._layout(plan, language)
         return {
             "check": self.model.name,
             "rule_set": self._identity,
@@ -67,10 +67,6 @@ class AnswerWriter:
                     holding.append(number)
         return decided, [decided, *holding]
 
-    def _finding(self, number, reader, language):
-        finding = self.model.findings[number]
-        return {"code": finding["code"], "verdict": finding["verdict"], "sentence": reader.sentence(self._templates[number, language])}
-
     def _engine_finding(self, code, verdict, reader, names):
         text = self.texts[code][reader.language]
         return {"code": code, "verdict": verdict, "sentence": text.replace("{names}", ", ".join(names))}
@@ -97,8 +93,15 @@ class AnswerWriter:
     def _layout(self, plan, language):
         layout = plan.layouts.get(language)
         if layout is None:
-            layout = plan.layouts[language] = Layout(self.model, plan, self.texts, language)
+            layout = plan.layouts[language] = Layout(self, plan, language)
         return layout
+
+    def quantity(self, unit, language):
+        """The writer of numbers in one unit and language."""
+        write = self._quantities.get((unit, language))
+        if write is None:
+            write = self._quantities[unit, language] = quantity_writer(self.units[unit], language)
+        return write
 
     # ---- what was assumed, what to mind ------------------------------------------------------------------------------------------------
 

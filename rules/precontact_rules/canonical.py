@@ -9,6 +9,7 @@ import json
 import math
 import re
 
+_PERHAPS = re.compile(r"\d(?:\.0|[eE]|\d{15})")      # all begin with a digit: quick to look for
 _LAID_OUT_OTHERWISE = re.compile(r"\d\.0(?![\d])|\d[eE][-+]?\d|(?<![\d.])\d{16}|[\ud800-\U0010ffff]")
 
 _encode = json.JSONEncoder(sort_keys=True, separators=(",", ":"), ensure_ascii=False, allow_nan=False).encode
@@ -17,7 +18,7 @@ _encode = json.JSONEncoder(sort_keys=True, separators=(",", ":"), ensure_ascii=F
 def canonical_bytes(data):
     """RFC 8785 bytes of JSON data. Raises ValueError for a number that JSON cannot hold."""
     text = _encode(data)
-    if _LAID_OUT_OTHERWISE.search(text):
+    if (not text.isascii() or _PERHAPS.search(text)) and _LAID_OUT_OTHERWISE.search(text):
         text = _written(data)
     return text.encode()
 

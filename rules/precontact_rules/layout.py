@@ -1,6 +1,8 @@
 """What of an answer is the same for every request of one signature and language, prepared once."""
 import math
 
+from .phrase import capitalised, joined
+
 
 def no_value(formula, texts, language):
     """Why a formula that could have a number has none."""
@@ -10,11 +12,14 @@ def no_value(formula, texts, language):
 class Layout:
     """Per plan and language: which results and steps of working are reported, and everything about them that no number changes."""
 
-    def __init__(self, model, plan, texts, language):
-        self.model, self.texts, self.language = model, texts, language
+    def __init__(self, writer, plan, language):
+        self.model, self.texts, self.language = writer.model, writer.texts, language
+        self._writer, self._plan, self._findings = writer, plan, {}
+        model = self.model
         ordered = sorted(model.formulas, key=lambda f: f["order"])
         applicable = model.applicable(plan.states)
-        results, working, self._names = [], [], {"least": -math.inf, "most": math.inf}
+        results, working = [], []
+        self._names = {"least": -math.inf, "most": math.inf, "joined": joined, "capitalised": capitalised}
         for formula in ordered:
             output = plan.outputs[formula["name"]]
             if formula["show"] == "result":
@@ -26,6 +31,30 @@ class Layout:
                 working.append(f"{{'name': {formula['name']!r}, 'value': {self._plain(output)}, {texts}}}")
         self.results = self._function(f"{{{', '.join(results)}}}")
         self.working = self._function(f"[{', '.join(working)}]")
+
+    def finding(self, number):
+        """reported(results, reader) of a finding: its code, verdict and sentence."""
+        made = self._findings.get(number)
+        if made is None:
+            finding = self.model.findings[number]
+            sentence = self._sentence(self._writer.templates[number, self.language].parts)
+            made = self._findings[number] = self._function(f"{{'code': {finding['code']!r}, 'verdict': {finding['verdict']!r}, 'sentence': {sentence}}}")
+        return made
+
+    def _sentence(self, parts):
+        pieces = [repr(content) if kind == "words" else self._words(content) if kind == "name" else f"joined(reader.listed{content!r}, {self.language!r})"
+                  for kind, content in parts if content]
+        if parts[0][1]:
+            pieces[0] = repr(capitalised(parts[0][1]))
+            return " + ".join(pieces)
+        return f"capitalised({' + '.join(pieces)})"
+
+    def _words(self, name):
+        """What stands for {name}: a plain number is written straight away, the rest asks the reader."""
+        output = self._plan.outputs.get(name)
+        if output is None or output.place is None or output.axes or output.names or output.imaginary is not None or output.formula["type"] == "boolean":
+            return f"reader.words({name!r})"
+        return f"{self._named(self._writer.quantity(output.formula['unit'], self.language))}(r[{output.place}])"
 
     # A listing is one expression over the tuple of results; only what has an interval, an axis or a name asks the reader.
 

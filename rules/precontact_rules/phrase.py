@@ -14,33 +14,44 @@ _LISTED = re.compile(r"^\s*([a-z0-9_.]+)\s*\|\s*([a-z0-9_.]+)\s*$")
 
 def number_text(value, unit, units, language):
     """A number in SI with its unit, to four significant digits: "2.497 MΩ", "-7.7 %"; None becomes "(no value)"."""
-    if value is None:
-        return _NO_VALUE[language]
-    known = units[unit]
-    value = value / known["factor"]
-    if not -math.inf < value < math.inf:      # finite in SI, but not in its own unit
-        return _NO_VALUE[language]
-    exponent, digits = _rounded(abs(value))
-    prefix = ""
-    if known["prefixes"] and value:
-        power = min(max((exponent // 3) * 3, -12), 9)
-        prefix, exponent = _PREFIXES[power], exponent - power
-    text = _laid_out(digits, exponent)
-    if language == "es":
-        text = text.replace(".", ",")
-    symbol = prefix + known["symbol"]
-    return ("-" if value < 0 and text.strip("0.,") else "") + text + ("\u00a0" + symbol if symbol else "")
+    return quantity_writer(units[unit], language)(value)
+
+
+def quantity_writer(unit, language):
+    """write(value) -> the text of numbers in one unit (its record in the bundle) and one language, as number_text has it."""
+    factor, symbol, prefixes, nothing = unit["factor"], unit["symbol"], unit["prefixes"], _NO_VALUE[language]
+
+    def write(value):
+        if value is None:
+            return nothing
+        value = value / factor
+        if not -math.inf < value < math.inf:      # finite in SI, but not in its own unit
+            return nothing
+        exponent, digits = _rounded(abs(value))
+        written = symbol
+        if prefixes and value:
+            power = min(max((exponent // 3) * 3, -12), 9)
+            written, exponent = _PREFIXES[power] + symbol, exponent - power
+        text = _laid_out(digits, exponent)
+        if language == "es":
+            text = text.replace(".", ",")
+        return ("-" if value < 0 and digits != "0" else "") + text + ("\u00a0" + written if written else "")
+
+    return write
 
 
 def _rounded(value):
     """(decimal exponent of the first digit, the significant digits) of a value >= 0, rounded half up on its exact binary value."""
     if value == 0:
         return 0, "0"
+    mantissa, _, power = f"{value:.{DIGITS}e}".partition("e")
+    if mantissa[-1] < "5":
+        return int(power), (mantissa[0] + mantissa[2:-1]).rstrip("0")
     shortest = repr(value).partition("e")[0].replace(".", "").strip("0")
     if len(shortest) != DIGITS + 1 or shortest[-1] != "5":
         # Not a tie, which has one digit more than is kept, a 5: there the C library's rounding of the exact value is the same.
         mantissa, _, power = f"{value:.{DIGITS - 1}e}".partition("e")
-        return int(power), mantissa.replace(".", "").rstrip("0") or "0"
+        return int(power), mantissa.replace(".", "").rstrip("0")
     exact = Decimal(value)
     exponent = exact.adjusted()
     rounded = exact.quantize(Decimal(1).scaleb(exponent - DIGITS + 1), rounding=ROUND_HALF_UP)
@@ -77,21 +88,9 @@ class Template:
         return [content if kind == "name" else content[1] for kind, content in self.parts if kind != "words"]
 
 
-compile_template = Template
-
-
-def fill(template, reader, language):
-    """The sentence; `reader.words(name)` and `reader.listed(name, condition)` supply what stands in its places."""
-    filled = []
-    for kind, content in template.parts:
-        if kind == "words":
-            filled.append(content)
-        elif kind == "name":
-            filled.append(reader.words(content))
-        else:
-            filled.append(joined(reader.listed(*content), language))
-    sentence = "".join(filled)
-    first = sentence[:1]      # it may begin with a name
+def capitalised(sentence):
+    """The sentence with a capital letter: it may begin with a name."""
+    first = sentence[:1]
     return (first.upper() if first <= _LATIN else first) + sentence[1:]
 
 

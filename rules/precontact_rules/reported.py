@@ -4,7 +4,6 @@ import math
 import numpy as np
 
 from .layout import no_value
-from .phrase import fill, number_text
 
 _LEAST, _MOST = -math.inf, math.inf      # a number strictly between them is finite; NaN is between nothing
 
@@ -13,7 +12,7 @@ class Reader:
     """The view of one request's results that the answer writer and the sentences look through."""
 
     def __init__(self, writer, intake, plan, results, intervals, language):
-        self.model, self.units, self.texts = writer.model, writer.units, writer.texts
+        self.model, self.texts, self.quantity_writer = writer.model, writer.texts, writer.quantity
         self.intake, self.plan, self.language = intake, plan, language
         self.results, self.intervals = results, intervals
 
@@ -107,10 +106,6 @@ class Reader:
 
     # ---- sentences -----------------------------------------------------------------------------------------------------------------
 
-    def sentence(self, template):
-        """The template's words with its places filled in."""
-        return fill(template, self, self.language)
-
     def words(self, name):
         """What stands in a sentence for {name}: a quantity with its unit, a choice's meaning, or a title."""
         output = self.plan.outputs.get(name)
@@ -151,7 +146,7 @@ class Reader:
         return self._quantity(value[1] if isinstance(value, tuple) else value, slot.unit)
 
     def _quantity(self, value, unit):
-        return number_text(value, unit, self.units, self.language)
+        return self.quantity_writer(unit, self.language)(value)
 
     def listed(self, name, condition):
         """For {axis.label | condition}: the names of the items for which the condition holds."""

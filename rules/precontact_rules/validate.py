@@ -4,31 +4,20 @@ The validator is compiled once per check from the bundle's own declaration, the 
 reference tables are made from.
 """
 from .declaration import Check
+from .intake import Intake, Members, unknown
 from .numbers import entry_number, escaped
-from .problems import InputProblems, Problem, in_order, shown
+from .problems import InputProblems, Problem, shown
 from .readers import columns, reader
 
 NO_TITLE = {"en": "the instrument described", "es": "el instrumento descrito"}
 _LISTED = 12      # so many allowed keys are written out in a message
 
 
-class Intake:
-    """A valid request: `states` (the signature), `values`, `sizes` of list axes, `assumed` slots, `origins` and `titles` of what came from
-    the catalogue. Both sequences have one element per slot.
-    """
-
-    __slots__ = ("states", "values", "sizes", "assumed", "origins", "titles", "problems", "branch")
-
-    def __init__(self):
-        self.states, self.values, self.sizes, self.assumed = [], [], {}, []
-        self.origins, self.titles, self.problems, self.branch = {}, {}, [], None
-
-
 def compile_intake(bundle, name):
     """Return intake(body) -> Intake for one check. The function raises InputProblems listing every fault."""
     check = Check(bundle, name)
     steps = [_compiled(node, bundle) for node in check.tree]
-    keys = frozenset(step.key for step in steps)
+    members = Members(steps)
     branch_field = next(field for field, _, _ in check.tree if field["name"] == check.branch)
     branches = frozenset(choice["key"] for choice in branch_field["choices"])
     expected = ", ".join(step.key for step in steps)
@@ -39,41 +28,13 @@ def compile_intake(bundle, name):
             raise InputProblems([Problem("", "wrong-type", f"{shown(body)} is not a JSON object; the members are {expected}")])
         branch = body.get(branch_field["key"])
         run.branch = branch if type(branch) is str and branch in branches else None
-        for step in steps:
-            _take(step, body.get(step.key), run, "")
-        if not body.keys() <= keys:
-            _unknown(body, keys, run.problems, "")
+        members.take(body, run, "")
         if run.problems:
             raise InputProblems(run.problems)
         run.states = tuple(run.states)
         return run
 
     return intake
-
-
-def _take(step, x, run, pointer):
-    """Let a step take its part of the body. What a part gives that is absent, or is only the id of an entry, never changes: it is kept."""
-    if step.kept is None or not (x is None or type(x) is str and step.by_id):
-        step.take(x, run, pointer)
-        return
-    kept = step.kept.get((run.branch, x))
-    if kept is None:
-        kept = Intake()
-        kept.branch = run.branch
-        step.take(x, kept, pointer)
-        if kept.problems:
-            run.problems.extend(kept.problems)
-        else:
-            step.kept[run.branch, x] = kept
-    run.states += kept.states
-    run.values += kept.values
-    if kept.assumed:
-        run.assumed += kept.assumed
-    if kept.sizes:
-        run.sizes.update(kept.sizes)
-    if kept.titles:
-        run.titles.update(kept.titles)
-        run.origins.update(kept.origins)
 
 
 def _compiled(node, bundle):
@@ -85,11 +46,6 @@ def _compiled(node, bundle):
     if field["kind"] == "reference":
         return _Reference(field, slot, children, bundle)
     return _Leaf(field, slot)
-
-
-def _unknown(body, keys, problems, pointer):
-    for key in in_order(body.keys() - keys):
-        problems.append(Problem(f"{pointer}/{escaped(key)}", "unknown-field", f"{shown(key)} is not known here; the members are {', '.join(sorted(keys))}"))
 
 
 def _applies(field, run, given, pointer):
@@ -165,8 +121,7 @@ class _Group:
 
     def __init__(self, field, steps):
         self.kept, self.by_id = {}, False
-        self.key, self.field, self.steps = field["key"], field, steps
-        self.keys = frozenset(step.key for step in steps)
+        self.key, self.field, self.members = field["key"], field, Members(steps)
 
     def take(self, x, run, pointer):
         pointer = f"{pointer}/{self.key}"
@@ -174,12 +129,9 @@ class _Group:
         if missing or not applies:
             x = {}
         elif type(x) is not dict:
-            run.problems.append(Problem(pointer, "wrong-type", f"{shown(x)} is not an object; its members are {', '.join(sorted(self.keys))}"))
+            run.problems.append(Problem(pointer, "wrong-type", f"{shown(x)} is not an object; its members are {', '.join(sorted(self.members.keys))}"))
             x = {}
-        for step in self.steps:
-            _take(step, x.get(step.key), run, pointer)
-        if not x.keys() <= self.keys:
-            _unknown(x, self.keys, run.problems, pointer)
+        self.members.take(x, run, pointer)
         if missing and applies and len(run.problems) == before:      # its fields have not said so already
             _required(self.field, run, pointer)
 
@@ -207,7 +159,7 @@ class _Catalogue:
             run.problems.append(Problem(pointer, "wrong-type", f"{shown(x)} is neither an id nor an object; give an id of the {self.kind} catalogue, its data, or an id with overrides"))
         else:
             if not x.keys() <= self.keys:
-                _unknown(x, self.keys, run.problems, pointer)
+                unknown(x, self.keys, run.problems, pointer)
             named = x.get("id")
             if named is None:
                 return x, {}, self.described
@@ -287,7 +239,7 @@ class _List:
             if type(item) is not dict:
                 run.problems.append(Problem(f"{pointer}/{i}", "wrong-type", f"{shown(item)} is not an object; its members are {', '.join(sorted(self.keys))}"))
             elif not item.keys() <= self.keys:
-                _unknown(item, self.keys, run.problems, f"{pointer}/{i}")
+                unknown(item, self.keys, run.problems, f"{pointer}/{i}")
         return [item if type(item) is dict else {} for item in x]
 
 

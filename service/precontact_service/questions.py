@@ -3,6 +3,7 @@ import orjson
 from precontact_rules import Problem
 
 from .body import read_json
+from .digests import digest
 from .door import EDITION
 from .editions import PIN
 from .language import chosen
@@ -25,7 +26,7 @@ class Question:
             edition = environ[EDITION] = self._editions.pinned(body.pop(PIN))
             self.require(edition, f"/{PIN}")
             ask, headers = edition.rule_set.question(self._name).answer, edition.answer_headers
-        return orjson.dumps(ask(body, language)), headers[language]
+        return orjson.dumps(ask(body, language, digest)), headers[language]
 
     def require(self, edition, pointer):
         """Raise ProblemError if the edition does not hold this check."""

@@ -5,7 +5,7 @@ import random
 
 from precontact_rules.canonical import canonical_bytes, digest
 from precontact_rules.declaration import Check
-from precontact_rules.phrase import Template, fill, number_text
+from precontact_rules.phrase import Template, capitalised, joined, number_text
 from precontact_rules.problems import InputProblems, shown
 from precontact_rules.readers import reader
 from precontact_rules.validate import compile_intake
@@ -143,5 +143,6 @@ def _sentences(bundle):
         template = Template(text)
         for language in ("en", "es"):
             filler = _Filler(rng)
-            sentence = fill(template, filler, language)
+            places = {"words": str, "name": filler.words, "list": lambda listed: joined(filler.listed(*listed), language)}      # noqa: B023
+            sentence = capitalised("".join(places[kind](content) for kind, content in template.parts))
             yield json.dumps({"text": text, "language": language, "names": template.names(), "said": filler.said, "sentence": sentence})
