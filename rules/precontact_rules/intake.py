@@ -1,5 +1,5 @@
 """What a valid request becomes, and how the members of an object take their parts of it: what never changes is worked out once and kept."""
-from .problems import Problem, in_order, shown
+from .problems import Problem, escaped, in_order, shown
 
 _COURSES = 256    # so many sets of members are kept for each object, with what the absent ones amount to
 

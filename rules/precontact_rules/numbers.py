@@ -2,7 +2,7 @@
 import math
 
 from .canonical import as_binary64, number_as_ecmascript
-from .problems import Problem, in_order, shown
+from .problems import Problem, escaped, in_order, shown
 
 EXACT_WHOLE = 2 ** 53 - 1      # up to here every reader of JSON has the same whole numbers (RFC 7493, 2.2); nothing on a test bench is larger
 SPREADS = ("half_width", "half_width_percent", "standard_uncertainty")
@@ -107,8 +107,3 @@ def range_text(field):
         if key in field:
             parts.append(f"{words} {number_as_ecmascript(field[key])}")
     return " and ".join(parts) or f"between -{EXACT_WHOLE} and {EXACT_WHOLE}"
-
-
-def escaped(key):
-    """The key as a token of a JSON pointer (RFC 6901)."""
-    return str(key).replace("~", "~0").replace("/", "~1")

@@ -23,6 +23,11 @@ class InputProblems(Exception):
         self.problems = problems
 
 
+def escaped(key):
+    """The key as a token of a JSON pointer (RFC 6901)."""
+    return str(key).replace("~", "~0").replace("/", "~1")
+
+
 def in_order(keys):
     """Keys of JSON objects in the order of their UTF-16 code units, which every runtime can sort by."""
     return sorted(keys, key=lambda key: key.encode("utf-16-be", "surrogatepass"))

@@ -5,7 +5,7 @@ reference tables are made from.
 """
 from .declaration import Check
 from .intake import Intake, Members, unknown
-from .numbers import entry_number, escaped
+from .numbers import entry_number
 from .problems import InputProblems, Problem, shown
 from .readers import columns, reader
 
