@@ -9,7 +9,7 @@ from hypothesis import given
 from hypothesis import strategies as st
 from precontact_rules.authoring.units import bundled
 from precontact_rules.canonical import canonical_bytes, digest
-from precontact_rules.phrase import Template, _rounded, fill, joined, number_text
+from precontact_rules.phrase import _rounded, capitalised, joined, number_text
 from precontact_rules.problems import in_order, shown
 from precontact_rules.readers import reader
 
@@ -110,4 +110,4 @@ def test_what_a_text_may_hold_does_not_hang_on_a_unicode_version(letter, fine):
 
 @pytest.mark.parametrize("name, sentence", [("éa", "Éa"), ("ß", "SS"), ("ſa", "Sa"), ("ƛ", "ƛ"), ("აბ", "აბ"), ("𐐨", "𐐨"), ("", "")])
 def test_a_sentence_gets_the_capital_that_every_runtime_knows(name, sentence):
-    assert fill(Template("{name}"), SimpleNamespace(words=lambda _: name), "en") == sentence
+    assert capitalised(name) == sentence
