@@ -100,7 +100,7 @@ class AnswerWriter:
         """The writer of numbers in one unit and language."""
         write = self._quantities.get((unit, language))
         if write is None:
-            write = self._quantities[unit, language] = quantity_writer(self.units[unit], language)
+            write = self._quantities[unit, language] = quantity_writer(self.units.get(unit), language)
         return write
 
     # ---- what was assumed, what to mind ------------------------------------------------------------------------------------------------

@@ -14,11 +14,16 @@ _LISTED = re.compile(r"^\s*([a-z0-9_.]+)\s*\|\s*([a-z0-9_.]+)\s*$")
 
 def number_text(value, unit, units, language):
     """A number in SI with its unit, to four significant digits: "2.497 MΩ", "-7.7 %"; None becomes "(no value)"."""
-    return quantity_writer(units[unit], language)(value)
+    return quantity_writer(units.get(unit), language)(value)
 
 
 def quantity_writer(unit, language):
-    """write(value) -> the text of numbers in one unit (its record in the bundle) and one language, as number_text has it."""
+    """write(value) -> the text of numbers in one unit (its record in the bundle) and one language, as number_text has it.
+
+    What has no unit (None) has no number either: a choice or a text that was not given.
+    """
+    if unit is None:
+        return lambda value: _NO_VALUE[language]
     factor, symbol, prefixes, nothing = unit["factor"], unit["symbol"], unit["prefixes"], _NO_VALUE[language]
 
     def write(value):
