@@ -2,7 +2,7 @@
 import { layout } from "./layout.js";
 import { isWeak } from "./model.js";
 import { template } from "./phrase.js";
-import { Reader } from "./reported.js";
+import { reader } from "./reported.js";
 
 const WORDS = ["danger", "warning", "caution", "notice"];      // ANSI Z535.4: most severe first
 
@@ -55,8 +55,8 @@ export function answerWriter({ data, version, digest }, model) {
   }
 
   return (intake, plan, results, intervals, beyond, inputDigest, language) => {
-    const reader = new Reader(look, intake, plan, results, intervals, language), holding = decide(plan.live, results), [decided] = holding;
-    const reported = holding.map((n) => ({ code: findings[n].code, verdict: findings[n].verdict, sentence: reader.sentence(sentences[n][language]) }));
+    const view = reader(look, intake, plan, results, intervals, language), holding = decide(plan.live, results), [decided] = holding;
+    const reported = holding.map((n) => ({ code: findings[n].code, verdict: findings[n].verdict, sentence: view.sentence(sentences[n][language]) }));
     let { verdict } = findings[decided];
     const unverified = verdict === "acceptable" ? weak(plan, intake, decided) : [];
     if (unverified.length) {
@@ -75,8 +75,8 @@ export function answerWriter({ data, version, digest }, model) {
       input_digest: inputDigest,
       verdict,
       findings: reported,
-      results: listing.results(reader),
-      working: listing.working(reader),
+      results: listing.results(view),
+      working: listing.working(view),
       assumptions: assumptions(plan, results, intake, language),
       cautions: cautionList(plan, results, holding, language),
       unverified,

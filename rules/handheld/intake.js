@@ -1,16 +1,18 @@
 /**
  * From a request body to slots: every problem found at once, in the order of the declaration.
  *
- * An intake is {states (the signature), values, sizes of list axes, assumed slots, origins and titles of what came from the catalogue, problems, branch}.
+ * An intake is {states (the signature), values, sizes of list axes, assumed slots, origins and titles of what came from the catalogue, problems,
+ * branch}.
  */
 import { declaredInputs } from "./declaration.js";
 import { entryNumber } from "./numbers.js";
-import { InputProblems, escaped, isObject, problem, shown } from "./problems.js";
+import { InputProblems, escaped, isObject, refuse, shown } from "./problems.js";
 import { columns, reader } from "./readers.js";
 
 const NO_TITLE = { en: "the instrument described", es: "el instrumento descrito" };
 const LISTED = 12;      // so many allowed keys are written out in a message
 
+const sorted = (keys) => [...keys].sort().join(", ");
 const started = (branch) => ({ states: [], values: [], sizes: new Map(), assumed: [], origins: new Map(), titles: new Map(), problems: [], branch });
 
 /** What a body has under a key: null where there is nothing. */
@@ -21,10 +23,13 @@ export function compileIntake(bundle, name) {
   const { tree } = declaredInputs(bundle, name), steps = tree.map((declared) => compiled(declared, bundle)), { branch } = bundle.checks[name];
   const [chosen] = tree.find(([field]) => field.name === branch), branches = chosen.choices.map((c) => c.key), keys = steps.map((step) => step.key);
   return (body) => {
-    if (!isObject(body)) throw new InputProblems([problem("", "wrong-type", `${shown(body)} is not a JSON object; the members are ${keys.join(", ")}`)]);
-    const given = member(body, chosen.key), run = started(branches.includes(given) ? given : null);
-    for (const step of steps) step.take(member(body, step.key), run, "");
-    unknown(body, keys, run, "");
+    const fine = isObject(body), given = fine ? member(body, chosen.key) : null, run = started(branches.includes(given) ? given : null);
+    if (fine) {
+      for (const step of steps) step.take(member(body, step.key), run, "");
+      unknown(body, keys, run, "");
+    } else {
+      refuse(run.problems, "", "wrong-type", `${shown(body)} is not a JSON object; the members are ${keys.join(", ")}`);
+    }
     if (run.problems.length) throw new InputProblems(run.problems);
     return run;
   };
@@ -63,20 +68,22 @@ function remembered(part, byId = false) {
 
 function unknown(body, keys, { problems }, pointer) {
   const found = Object.keys(body).filter((key) => !keys.includes(key) && body[key] !== undefined);
-  for (const key of found.sort()) problems.push(problem(`${pointer}/${escaped(key)}`, "unknown-field", `${shown(key)} is not known here; the members are ${[...keys].sort().join(", ")}`));
+  for (const key of found.sort()) {
+    refuse(problems, `${pointer}/${escaped(key)}`, "unknown-field", `${shown(key)} is not known here; the members are ${sorted(keys)}`);
+  }
 }
 
 /** Whether the field belongs to the chosen branch; a value given elsewhere is a problem. */
 function applies({ only }, { branch, problems }, given, pointer) {
   if (!only || branch === null || only.includes(branch)) return true;
-  if (given) problems.push(problem(pointer, "not-applicable", `does not apply to ${branch}; it belongs to ${only.join(", ")}`));
+  if (given) refuse(problems, pointer, "not-applicable", `does not apply to ${branch}; it belongs to ${only.join(", ")}`);
   return false;
 }
 
 function require(field, { branch, problems }, pointer) {
   if (!field.required || (branch === null && field.only)) return;
   const asked = field.meaning.en + (field.kind === "number" ? `, in ${field.unit.replaceAll("_", " ")}` : "");
-  problems.push(problem(pointer, "missing", `nothing is given; needed: ${asked}`));
+  refuse(problems, pointer, "missing", `nothing is given; needed: ${asked}`);
 }
 
 /** What is given to a field that may be required: x, or null where it is absent or does not apply. */
@@ -86,12 +93,11 @@ function offered(field, run, x, pointer) {
   return x;
 }
 
-const isSpread = (value) => isObject(value);
 const assumption = ({ kind, assume }, { factor }) => (assume ? (kind === "number" ? assume.value * factor : assume.value) : null);
 
 /**
- * The value of one field: take(x, run, where, entry, kept) where x is what is given, `entry` the catalogue's [value, record] where a reference supplies one;
- * kept(record) is told of the origin, assumed() of an assumption.
+ * valueOf(x, run, where, entry, place) -> [value, record or null] of one field: x is what is given, `entry` the catalogue's [value, record] where a
+ * reference supplies one, `place` what is noted where a value is assumed.
  */
 function valueTaker(field, slot) {
   const read = reader(field, slot), assumed = assumption(field, slot);
@@ -112,7 +118,7 @@ function leaf(field, slot) {
     const [value, record] = valueOf(x, run, `${pointer}/${key}`, entry, slot.index);
     if (record) run.origins.set(slot.index, record);
     run.values.push(value);
-    run.states.push(value === null ? nothing : stated ? value : kind === "number" && isSpread(value) ? "u" : "x");
+    run.states.push(value === null ? nothing : stated ? value : kind === "number" && isObject(value) ? "u" : "x");
   } };
 }
 
@@ -123,7 +129,7 @@ function group(field, steps) {
     const where = `${pointer}/${key}`, applied = applies(field, run, x !== null, where), before = run.problems.length;
     let body = x === null || !applied ? {} : x;
     if (!isObject(body)) {
-      run.problems.push(problem(where, "wrong-type", `${shown(x)} is not an object; its members are ${[...keys].sort().join(", ")}`));
+      refuse(run.problems, where, "wrong-type", `${shown(x)} is not an object; its members are ${sorted(keys)}`);
       body = {};
     }
     for (const step of steps) step.take(member(body, step.key), run, where);
@@ -145,20 +151,21 @@ function catalogue({ of: kind }, bundle) {
     found.set(id, { overrides: {}, entry: values, title });
   }
   const nothing = { overrides: null, entry: new Map(), title: described }, ids = [...found.keys()].sort();
-  const unknownId = (x, pointer) => problem(pointer, "unknown-id", `${shown(x)} is not in the ${kind} catalogue; `
+  const unknownId = (x, { problems }, pointer) => refuse(problems, pointer, "unknown-id", `${shown(x)} is not in the ${kind} catalogue; `
     + (ids.length <= LISTED ? `known: ${ids.join(", ")}` : `${ids.length} are listed under /v1/catalogues/${folder}`));
   return (x, run, pointer) => {
     if (typeof x === "string") {
       if (found.has(x)) return found.get(x);
-      run.problems.push(unknownId(x, pointer));
+      unknownId(x, run, pointer);
     } else if (!isObject(x)) {
-      run.problems.push(problem(pointer, "wrong-type", `${shown(x)} is neither an id nor an object; give an id of the ${kind} catalogue, its data, or an id with overrides`));
+      refuse(run.problems, pointer, "wrong-type",
+        `${shown(x)} is neither an id nor an object; give an id of the ${kind} catalogue, its data, or an id with overrides`);
     } else {
       unknown(x, keys, run, pointer);
       const named = member(x, "id");
       if (named === null) return { ...nothing, overrides: x };
       if (found.has(named)) return { ...found.get(named), overrides: x };
-      run.problems.push(unknownId(named, `${pointer}/id`));
+      unknownId(named, run, `${pointer}/id`);
     }
     return nothing;
   };
@@ -168,7 +175,8 @@ function catalogue({ of: kind }, bundle) {
 function reference(field, path, children, bundle) {
   const resolve = catalogue(field, bundle), steps = children.map(([f, slot]) => leaf(f, slot)), { key } = field;
   return { key, take(x, run, pointer) {
-    const where = `${pointer}/${key}`, given = offered(field, run, x, where), { overrides, entry, title } = given === null ? { overrides: null } : resolve(given, run, where);
+    const where = `${pointer}/${key}`, given = offered(field, run, x, where);
+    const { overrides, entry, title } = given === null ? { overrides: null } : resolve(given, run, where);
     if (given !== null) run.titles.set(path, title);
     for (const step of steps) {
       if (overrides) {
@@ -184,26 +192,18 @@ function reference(field, path, children, bundle) {
 /** A list of objects: one axis; every field is a column. */
 function list(field, children, bundle) {
   const columnsOf = children.map(([f, slot, inner]) => (f.kind === "reference" ? referenceColumns(f, slot, inner, bundle) : plainColumn(f, slot)));
-  const { key, item: axis, least = 0, most = 16 } = field, keys = columnsOf.map((c) => c.key), members = [...keys].sort().join(", ");
+  const { key, item: axis, least = 0, most = 16 } = field, keys = columnsOf.map((c) => c.key);
   function items(x, run, where) {
     const { problems } = run;
     if (x === null) return [];
-    if (!Array.isArray(x)) {
-      problems.push(problem(where, "wrong-type", `${shown(x)} is not a list; give a list of ${axis} objects`));
-      return [];
-    }
-    if (x.length > most) {
-      problems.push(problem(where, "too-many-items", `${x.length} items; at most ${most}`));
-      return [];
-    }
-    if (x.length < least) problems.push(problem(where, "too-few-items", `${x.length} items; at least ${least}`));
+    if (!Array.isArray(x)) return refuse(problems, where, "wrong-type", `${shown(x)} is not a list; give a list of ${axis} objects`) ?? [];
+    if (x.length > most) return refuse(problems, where, "too-many-items", `${x.length} items; at most ${most}`) ?? [];
+    if (x.length < least) refuse(problems, where, "too-few-items", `${x.length} items; at least ${least}`);
     return x.map((one, i) => {
-      if (isObject(one)) {
-        unknown(one, keys, run, `${where}/${i}`);
-        return one;
-      }
-      problems.push(problem(`${where}/${i}`, "wrong-type", `${shown(one)} is not an object; its members are ${members}`));
-      return {};
+      const at = `${where}/${i}`;
+      if (!isObject(one)) return refuse(problems, at, "wrong-type", `${shown(one)} is not an object; its members are ${sorted(keys)}`) ?? {};
+      unknown(one, keys, run, at);
+      return one;
     });
   }
   return { key, take(x, run, pointer) {
@@ -213,12 +213,12 @@ function list(field, children, bundle) {
   } };
 }
 
-/** The column of one field of a list's items: values(pairs of [given, entry], run, pointer, inside); none(count, run) where nothing is given at all. */
+/** One field of a list's items: values(pairs of [given, entry], run, pointer, inside); none(count, run) where nothing is given at all. */
 function column(field, slot) {
   const valueOf = valueTaker(field, slot), codes = field.kind === "choice" ? field.choices.map((c) => c.key) : null;
   function append(values, run) {
     const lacking = values.filter((v) => v === null).length, all = lacking === values.length;
-    const spread = field.kind === "number" && values.some(isSpread), letter = field.kind === "number" && lacking ? (spread ? "V" : "N") : spread ? "U" : "L";
+    const spread = field.kind === "number" && values.some(isObject), letter = field.kind === "number" && lacking ? (spread ? "V" : "N") : spread ? "U" : "L";
     run.states.push(all ? "a" : letter);
     run.values.push(all ? null : codes ? values.map((v) => codes.indexOf(v)) : values);
   }

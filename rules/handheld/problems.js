@@ -13,7 +13,11 @@ export class InputProblems extends Error {
   }
 }
 
-export const problem = (pointer, code, detail) => ({ pointer, code, detail });
+/** Adds a problem; null, which stands for what could not be read. */
+export function refuse(problems, pointer, code, detail) {
+  problems.push({ pointer, code, detail });
+  return null;
+}
 
 export const isObject = (value) => typeof value === "object" && value !== null && !Array.isArray(value);
 export const escaped = (key) => key.replaceAll("~", "~0").replaceAll("/", "~1");

@@ -1,6 +1,6 @@
 /** Reading one value of a request: a number, a choice, a switch, a text or a curve. read(x, run, pointer) -> its value, or null after a problem. */
 import { EXACT_WHOLE, numberReader } from "./numbers.js";
-import { problem, shown } from "./problems.js";
+import { refuse, shown } from "./problems.js";
 
 // Controls, spaces other than the plain one, the soft hyphen, marks that are not seen or change the direction of text, separators of lines,
 // surrogates, private use, the noncharacters of the basic plane.
@@ -21,33 +21,27 @@ const READERS = {
     const only = new Map(choices.map((c) => [c.key, c.only])), listed = [...only.keys()].join(", ");
     return (x, { branch, problems }, pointer) => {
       const wanted = only.get(x);
-      if (!only.has(x)) problems.push(problem(pointer, typeof x === "string" ? "unknown-choice" : "wrong-type", `${shown(x)} is not one of the choices; they are ${listed}`));
-      else if (wanted && branch !== null && !wanted.includes(branch)) problems.push(problem(pointer, "not-applicable", `${x} does not go with ${branch}; it belongs to ${wanted.join(", ")}`));
-      else return x;
-      return null;
+      if (!only.has(x)) {
+        const code = typeof x === "string" ? "unknown-choice" : "wrong-type";
+        return refuse(problems, pointer, code, `${shown(x)} is not one of the choices; they are ${listed}`);
+      }
+      if (!wanted || branch === null || wanted.includes(branch)) return x;
+      return refuse(problems, pointer, "not-applicable", `${x} does not go with ${branch}; it belongs to ${wanted.join(", ")}`);
     };
   },
-  switch: () => (x, { problems }, pointer) => {
-    if (typeof x === "boolean") return x;
-    problems.push(problem(pointer, "wrong-type", `${shown(x)} is neither true nor false`));
-    return null;
-  },
+  switch: () => (x, { problems }, pointer) =>
+    (typeof x === "boolean" ? x : refuse(problems, pointer, "wrong-type", `${shown(x)} is neither true nor false`)),
   text: ({ longest }) => (x, { problems }, pointer) => {
-    if (typeof x !== "string") {
-      problems.push(problem(pointer, "wrong-type", `${shown(x)} is not text`));
-      return null;
-    }
+    if (typeof x !== "string") return refuse(problems, pointer, "wrong-type", `${shown(x)} is not text`);
     const letters = [...x].length;
-    if (letters > longest) problems.push(problem(pointer, "too-long", `${letters} characters; at most ${longest}`));
-    else if (NOT_PRINTED.test(x)) problems.push(problem(pointer, "bad-characters", "holds a character that cannot be printed; plain text on one line is right"));
-    else return x || null;
-    return null;
+    if (letters > longest) return refuse(problems, pointer, "too-long", `${letters} characters; at most ${longest}`);
+    if (!NOT_PRINTED.test(x)) return x || null;
+    return refuse(problems, pointer, "bad-characters", "holds a character that cannot be printed; plain text on one line is right");
   },
   curve: () => (x, { problems }, pointer) => {
     // The points of a curve have one order, whatever order they come in; two at one x are a step there.
     if (Array.isArray(x) && x.length > 0 && x.length <= 64 && x.every(isPoint)) return columns([...x].sort((a, b) => a[0] - b[0]));
-    problems.push(problem(pointer, "wrong-type", `${shown(x)} is not a curve; give 1 to 64 pairs of numbers [[x, y], ...]`));
-    return null;
+    return refuse(problems, pointer, "wrong-type", `${shown(x)} is not a curve; give 1 to 64 pairs of numbers [[x, y], ...]`);
   },
 };
 
