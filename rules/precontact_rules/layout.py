@@ -77,7 +77,7 @@ class Layout:
         if output.formula["type"] == "boolean":
             return f"{{'value': {place}}}"
         nothing = self._named({"value": None, "reason": no_value(output.formula, self.texts, self.language)})
-        return f"({{'value': {self._scaled(place, output)}}} if least < {place} < most else {nothing})"
+        return f"({{'value': value}} if least < (value := {self._scaled(place, output)}) < most else {nothing})"
 
     def _plain(self, output):
         if output.place is None or output.axes or output.imaginary is not None:
@@ -85,7 +85,7 @@ class Layout:
         place = f"r[{output.place}]"
         if output.formula["type"] == "boolean":
             return place
-        return f"({self._scaled(place, output)} if least < {place} < most else None)"
+        return f"(value if least < (value := {self._scaled(place, output)}) < most else None)"
 
     @staticmethod
     def _scaled(place, output):

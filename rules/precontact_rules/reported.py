@@ -42,16 +42,17 @@ class Reader:
     def _one(self, value, low, high, output):
         if value is True or value is False:
             return {"value": value}
+        value = self._scaled(value, output.factor)      # which may leave the numbers that there are
         if not _LEAST < value < _MOST:
             return {"value": None, "reason": no_value(output.formula, self.texts, self.language)}
         if output.names:
             return self._named(output.names, int(value))
         if low is None:
-            return {"value": self._scaled(value, output.factor)}
-        low, high = float(low), float(high)
+            return {"value": value}
+        low, high = self._scaled(float(low), output.factor), self._scaled(float(high), output.factor)
         if not (_LEAST < low and high < _MOST):
-            return {"value": self._scaled(value, output.factor), "low": None, "high": None, "reason": self.texts["partly-no-value"][self.language]}
-        return {"value": self._scaled(value, output.factor), "low": self._scaled(low, output.factor), "high": self._scaled(high, output.factor)}
+            return {"value": value, "low": None, "high": None, "reason": self.texts["partly-no-value"][self.language]}
+        return {"value": value, "low": low, "high": high}
 
     @staticmethod
     def _scalar(value):
@@ -96,7 +97,8 @@ class Reader:
 
     def _bare(self, value, factor):
         if type(value) is float:
-            return (value if factor == 1 else value / factor) + 0.0 if _LEAST < value < _MOST else None
+            value = self._scaled(value, factor)
+            return value if _LEAST < value < _MOST else None
         if value is True or value is False:
             return value
         value = np.asarray(value)

@@ -1,6 +1,8 @@
 """Numbers, spreads, curves and texts for generated questions: realistic ones learned from the bundle, and the edges of what a field allows."""
 import math
 
+from precontact_rules.points import POINTS, SCORE_LIMIT
+
 # Where a log-uniform draw starts and ends, by the unit's last word; anything else takes OTHER. In the field's own unit.
 PLAUSIBLE = {"volt": (1e-3, 3e4), "ohm": (1e-2, 1e10), "ampere": (1e-7, 1e2), "farad": (1e-13, 1e-5), "henry": (1e-6, 1e2), "hertz": (1e-1, 1e6),
              "second": (1e-4, 1e4), "percent": (1e-2, 150), "metre": (1e-1, 1e4), "celsius": (1, 90), "degree": (1, 360), "ratio": (1e-2, 10)}
@@ -100,6 +102,9 @@ class Drawing:
             return {"value": value, form: min(share * 100, 2.0 ** 53)}
         size = min(share * (abs(value) or rng.choice([1e-3, 1.0])), 2.0 ** 53)
         if form != "between":
+            if rng.random() < 0.04 and low < value < high:       # the outermost sample falls on the bound, or a last place to either side of it
+                reach = SCORE_LIMIT if form == "standard_uncertainty" else 1 - 1 / POINTS
+                size = min(rng.choice([value - low, high - value]) / reach * rng.choice([1, 1 - 2e-16, 1 + 2e-16, 1.0001]), 2.0 ** 53)
             return {"value": value, form: size}
         ends = [min(max(value - size, low), high), min(max(value + size, low), high)]
         return {"between": ends if rng.random() < 0.9 else ends[::-1]}
