@@ -52,8 +52,8 @@ def _spoil(bundle, fields, part, rng):
 
 def _spoil_list(bundle, field, part, given, rng):
     items = part[field["key"]] = given if isinstance(given, list) and given else [{}]
-    if rng.random() < 0.15:
-        part[field["key"]] = items * (field.get("most", 16) + 1) if rng.random() < 0.7 else []
+    if rng.random() < 0.3:
+        part[field["key"]] = items * (field.get("most", 16) + 1) if rng.random() < 0.5 else []
     elif rng.random() < 0.15:
         items[rng.randrange(len(items))] = rng.choice(STRANGE)
     else:

@@ -14,6 +14,8 @@ from .questions import cases, questions
 COUNTS = {"device-trip": 6500, "induced-voltage": 2300, "loading-error": 6400, "loop-shift": 5200}
 LEAST = 20_000
 EXAMPLE = HERE.parent / "rules" / "example"
+PROBLEMS = {"bad-characters", "missing", "not-applicable", "not-finite", "not-uncertain", "out-of-range", "too-few-items", "too-long", "too-many-items",
+            "two-spreads", "unknown-choice", "unknown-field", "unknown-id", "wrong-type"}
 SCRIPTS = ("compare_node.js", "compare_chromium.js")
 
 
@@ -106,6 +108,7 @@ def test_the_questions_reach_the_rules(generated, worked):
     reached = {check: codes - worked.codes[check] - generated.codes[check] for check, codes in declared.items()}
     print(f"\nfindings no question reaches: {reached}; no worked case: {by_cases}")
     assert not any(reached.values()), reached
+    assert generated.problems == PROBLEMS
 
 
 @pytest.mark.parametrize("script", SCRIPTS)
