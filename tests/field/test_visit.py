@@ -117,7 +117,13 @@ def test_a_retirement_is_shown(visit):
 
 def test_an_update_says_its_size_and_time(visit):
     assert visit["updateText"].startswith("Rule set 1.0.0 is the latest: ")
+    assert visit["focusAfterUpdate"] == "update-now"
     assert "received" in visit["updateText"] and visit["updateText"].endswith(" s.")
+
+
+def test_a_changed_bundle_is_refused_in_the_language_of_the_device(visit):
+    assert "No hay reglas en este dispositivo" in visit["refused"]
+    assert "Sus bytes no son los anunciados." in visit["refused"]
 
 
 def test_a_newer_page_is_gathered_whole_and_offered(visit):

@@ -36,6 +36,18 @@ test("no text is left over", () => {
   assert.deepEqual(unused, []);
 });
 
+test("every reason for which the runtime refuses a rule set has words, in both languages", () => {
+  const sources = ["trust", "keeper", "receiver", "proof", "stores"]
+    .map((name) => fs.readFileSync(new URL(`../${name}.js`, FOLDER), "utf8"))
+    .join("\n");
+  const codes = new Set([...sources.matchAll(/(?:BundleRefused|refused)\("([a-z-]+)"/g)].map(([, code]) => code));
+  assert.ok(codes.size > 12);
+  assert.deepEqual(
+    [...codes].filter((code) => !(`refused-${code}` in en)),
+    [],
+  );
+});
+
 test("no text says that something is safe, dead or free of voltage", () => {
   const forbidden = /\b(safe|dead|de-energi[sz]ed|seguro|segura|muerto|desenergizado)\b/i;
   for (const texts of [en, es]) for (const [key, text] of Object.entries(texts)) assert.doesNotMatch(text, forbidden, key);

@@ -18,7 +18,8 @@ const PHONE = { width: 360, height: 740 },
   PATIENCE = 60_000;
 const seen = { outside: [], violations: [], errors: [], answers: {}, exported: {}, focus: {}, barriers: [] };
 
-const server = spawn(python, [path.join(import.meta.dirname, "serve.py"), folder], { stdio: ["ignore", "pipe", "inherit"] });
+const server = spawn(python, [path.join(import.meta.dirname, "serve.py"), folder], { stdio: ["ignore", "pipe", "ignore"] });
+process.on("exit", () => server.kill("SIGKILL"));
 const base = String((await once(server.stdout, "data"))[0]).trim();
 
 const browser = await chromium.launch({ executablePath: browserPath, args: ["--no-sandbox", "--disable-dev-shm-usage"] });
@@ -59,6 +60,21 @@ async function rewritten(name, change) {
   fs.writeFileSync(file, change(fs.readFileSync(file, "utf8")));
 }
 
+// On a device that has nothing yet, a bundle that was changed on the way is refused in words; then all is well again.
+const bundle = fs.readFileSync(path.join(folder, "field/rule-set/1.0.0.json"));
+await rewritten("rule-set/1.0.0.json", (text) => text.replace("Loading error", "Loading terro"));
+const bare = await browser.newContext({ viewport: PHONE, locale: "es-ES" }),
+  refusing = await bare.newPage();
+await refusing.goto(base);
+await refusing.waitForSelector("main button");
+seen.refused = await refusing.textContent("main");
+fs.writeFileSync(path.join(folder, "field/rule-set/1.0.0.json"), bundle);
+const later = new Date(Date.now() + 60_000); // a plain server tells two states apart by the second
+fs.utimesSync(path.join(folder, "field/rule-set/1.0.0.json"), later, later);
+await refusing.click("main button");
+await refusing.waitForSelector(".check-card");
+await bare.close();
+
 // Online.
 await page.goto(base);
 seen.opening = await page.textContent("h1");
@@ -79,7 +95,8 @@ await open("#/rule-set", "text=Look for a newer one");
 await typist.press("Look for a newer one");
 await page.waitForFunction(() => document.getElementById("notices").textContent.includes("deprecated"));
 seen.retirementNotice = await notices();
-seen.updateText = await page.textContent("main [role=status]");
+seen.focusAfterUpdate = (await typist.focused()).id;
+seen.updateText = await page.textContent("main .update");
 
 await rewritten("texts-en.js", (text) =>
   text.replace("Before the probe touches: which question?", "Before the probe touches anything: which question?"),

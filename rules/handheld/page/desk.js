@@ -17,6 +17,7 @@ function open() {
     for (const { reject } of waiting.values())
       reject(Object.assign(new Error(event.message || "the worker failed"), { code: "worker-failed", detail: event.message || "" }));
     waiting.clear();
+    worker = null;
   });
 }
 

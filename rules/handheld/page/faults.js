@@ -63,8 +63,6 @@ export function clearFaults(form, summary) {
 
 function go(event, target) {
   event.preventDefault();
-  for (let folded = target.closest("details:not([open])"); folded; folded = folded.parentElement.closest("details:not([open])")) folded.open = true;
-  if (target.closest(".spread")) target.closest(".spread").hidden = false;
   focusOn(target);
   target.scrollIntoView({ block: "center" });
 }
@@ -86,6 +84,9 @@ function mark(holder, pointer, words, where, seen) {
     holder.querySelector("input, select, button");
   if (seen.has(id)) return control;
   seen.add(id);
+  for (let folded = control.closest("details:not([open])"); folded; folded = folded.parentElement.closest("details:not([open])")) folded.open = true;
+  const panel = control.closest(".spread");
+  if (panel) panel.hidden = false;
   const legend = holder.matches("fieldset") ? holder.querySelector("legend") : holder.querySelector("label");
   legend.after(make("p", { class: "fault", id }, make("span", { "class": "fault-sign", "aria-hidden": "true" }, "✕ "), words));
   for (const input of control.type === "radio" ? holder.querySelectorAll("input") : [control]) {

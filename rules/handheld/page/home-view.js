@@ -65,7 +65,7 @@ export function openingView(again) {
       {},
       make("h1", {}, say(failed ? "no-rule-set" : "opening")),
       make("p", { role: failed ? "alert" : "status" }, failed ? refusalText(refusal) : say(update ? "fetching" : "proving")),
-      failed && button(say("try-again"), again, { class: "primary" }),
+      failed && button(say("try-again"), again, { class: "primary", id: "try-again" }),
     ),
   };
 }

@@ -40,7 +40,7 @@ function size(bytes) {
 const seconds = (milliseconds) => say("seconds", { count: (milliseconds / 1000).toLocaleString(locale(), { maximumFractionDigits: 2 }) });
 
 /** What the last update did. */
-function updateText() {
+export function updateText() {
   const { update } = session;
   if (!update) return say("update-never");
   if (update.state === "asking") return say("update-asking");
@@ -74,8 +74,8 @@ export async function ruleSetView() {
         row("basis-page", say(`page-${kept === "renewed" ? "kept" : kept}`)),
       ),
       make("h2", {}, say("update-heading")),
-      make("p", { role: "status" }, updateText()),
-      button(say("update-now"), () => updateRules(), { class: "primary", disabled: session.update?.state === "asking" }),
+      make("p", { class: "update" }, updateText()),
+      button(say("update-now"), () => updateRules(), { class: "primary", id: "update-now" }),
       make("h2", {}, say("settings-heading")),
       chosen("settings-light", "light", LIGHTS, light(), (one) => say(`light-${one}`), chooseLight),
       chosen("settings-keypad", "keypad", KEYPADS, keypad(), (one) => say(`keypad-${one}`), chooseKeypad),

@@ -85,7 +85,13 @@ async function tell(changed) {
   if (changed) for (const client of await clients.matchAll({ includeUncontrolled: true })) client.postMessage({ page: "renewed" });
 }
 
-addEventListener("install", (event) => event.waitUntil(renewInTurn().then(tell).then(() => skipWaiting())));
+addEventListener("install", (event) =>
+  event.waitUntil(
+    renewInTurn()
+      .then(tell)
+      .then(() => skipWaiting()),
+  ),
+);
 addEventListener("activate", (event) => event.waitUntil(clients.claim()));
 
 // The page asks once when it opens: is there a newer state of its files? Without a network there is none.

@@ -32,6 +32,7 @@ export async function openRules() {
 
 /** Ask for a newer rule set. */
 export async function updateRules() {
+  if (session.update?.state === "asking") return;
   session.update = { state: "asking" };
   changed("update");
   try {

@@ -4,7 +4,7 @@ import { announce, button, fill, focusOn, make } from "./elements.js";
 import { homeView, openingView } from "./home-view.js";
 import { recentView } from "./recent-view.js";
 import { recordView } from "./record-view.js";
-import { noticeTexts, ruleSetView } from "./rule-set-view.js";
+import { noticeTexts, ruleSetView, updateText } from "./rule-set-view.js";
 import { keepPage, onChange, openRules, session, updateRules } from "./session.js";
 import { applySettings, chooseLanguage, chooseLight, light } from "./settings.js";
 import { say, spoken } from "./texts.js";
@@ -28,7 +28,9 @@ async function show({ keepFocus = false } = {}) {
   const view = session.rules ? await (VIEWS[name] || homeView)(...rest) : openingView(openRules);
   if (location.hash !== asked) return; // the person went on while the view was made
   shownRoute = asked;
+  const held = main.contains(document.activeElement) && document.activeElement.id;
   fill(main, view.element);
+  if (sameView && held) document.getElementById(held)?.focus();
   document.title = `${view.title} – Precontact`;
   drawFrame(name);
   if (!keepFocus && !sameView && view.focus !== false) {
@@ -114,13 +116,11 @@ window.addEventListener("hashchange", () => show());
 window.addEventListener("online", drawState);
 window.addEventListener("offline", drawState);
 onChange((what) => {
-  if (what === "rules") {
-    const typing = main.contains(document.activeElement) && document.activeElement.matches("input, select, textarea, button");
-    if (!typing) show({ keepFocus: true });
-  } else if (what === "update" && route()[0] === "rule-set" && session.rules) show({ keepFocus: true });
+  // A form that is being filled in stays as it is; the next view is made from what is new.
+  const typing = main.querySelector("form")?.contains(document.activeElement);
+  if (!session.rules || (what === "rules" && !typing) || (what === "update" && route()[0] === "rule-set")) show({ keepFocus: true });
   drawState();
-  const { update } = session;
-  if (what === "update" && update?.state === "updated") announce(say("update-updated", { ...update, size: "", time: "" }));
+  if (what === "update" && session.rules && (session.update.state === "updated" || route()[0] === "rule-set")) announce(updateText());
 });
 
 await openRules();
