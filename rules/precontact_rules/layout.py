@@ -27,8 +27,11 @@ class Layout:
                 if keep:
                     results.append(f"{formula['key']!r}: {self._result(output, fixed)}")
             if formula["show"] != "hidden" and output.absent is None:
-                texts = f"'unit': {formula['unit']!r}, 'formula': {formula['text']!r}, 'source': {formula['source']!r}"
-                working.append(f"{{'name': {formula['name']!r}, 'value': {self._plain(output)}, {texts}}}")
+                step = {"name": formula["name"], "value": None, "unit": formula["unit"], "formula": formula["text"], "source": formula["source"]}
+                if output.place is None:      # the signature settles it: one step for all answers
+                    working.append(self._named({**step, "value": None if output.hidden else output.fixed}))
+                else:
+                    working.append(repr(step).replace("'value': None", f"'value': {self._plain(output)}", 1))
         self.results = self._function(f"{{{', '.join(results)}}}")
         self.working = self._function(f"[{', '.join(working)}]")
 
@@ -80,7 +83,7 @@ class Layout:
         return f"({{'value': value}} if least < (value := {self._scaled(place, output)}) < most else {nothing})"
 
     def _plain(self, output):
-        if output.place is None or output.axes or output.imaginary is not None:
+        if output.axes or output.imaginary is not None:
             return f"reader.plain({self._named(output)})"
         place = f"r[{output.place}]"
         if output.formula["type"] == "boolean":

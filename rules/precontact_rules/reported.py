@@ -88,8 +88,6 @@ class Reader:
 
     def plain(self, output):
         """A formula's value for the working: a number, boolean, list, complex as an object, or null."""
-        if output.place is None:
-            return None if output.hidden else output.fixed
         value = self.results[output.place]
         if output.imaginary is not None:
             return {"re": self._bare(value, output.factor), "im": self._bare(self.results[output.imaginary], output.factor)}
