@@ -189,7 +189,7 @@ def cases(bundle):
 
 def written(body):
     """The JSON text of a body that both runtimes read. Whole numbers are written as such: JavaScript does not remember whether one was 12 or 12.0."""
-    return json.dumps(_as_ecmascript(body), ensure_ascii=False, separators=(",", ":")).replace("Infinity", "1e400")
+    return json.dumps(_as_ecmascript(body), separators=(",", ":")).replace("Infinity", "1e400")
 
 
 def _as_ecmascript(value):
