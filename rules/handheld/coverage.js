@@ -44,7 +44,11 @@ export function coverageEnds(x, drawn) {
   return ends.map((end) => between(end, least, most));
 }
 
-const between = (value, least, most) => Math.min(Math.max(value, least), most);
+/** Kept within two bounds; of two equal ones the value itself, whatever the sign of its zero. */
+function between(value, least, most) {
+  const raised = least > value ? least : value;
+  return most < raised ? most : raised;
+}
 
 /** A cubic in the normal score fitted to the tails in `low` and `high`, kept near the plain order statistics. */
 function smoothEnds() {

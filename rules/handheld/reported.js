@@ -77,8 +77,8 @@ export function reader({ model, units, texts }, intake, plan, results, intervals
     if (output) return formulaWords(output);
     if (intake.titles.has(name)) return intake.titles.get(name)[language];
     if (index !== undefined) return slotWords(model.slots[index], intake.states[index], intake.values[index]);
-    const { value, unit } = constant(model, name);
-    return quantity(value, unit);
+    const found = constant(model, name);      // nothing: a reference that was not given
+    return found ? quantity(found.value, found.unit) : quantity(null);
   }
 
   function formulaWords({ formula, absent, hidden, place, fixed, imaginary }) {

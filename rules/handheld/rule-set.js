@@ -6,6 +6,7 @@ import { give, take } from "./machine.js";
 import { modelOf } from "./model.js";
 import { Plan } from "./plan.js";
 import { POINTS, PointSet, SCORE_LIMIT } from "./points.js";
+import { InputProblems, refuse } from "./problems.js";
 
 export const LANGUAGE = 1;      // the rule-language version this engine speaks
 const PLANS_KEPT = 512;         // compiled signatures kept per check; the oldest goes first
@@ -52,6 +53,7 @@ class Question {
     if (plan.exact) {
       results = program.run(intake);
     } else {
+      this.requireDimensions(intake, plan);
       const { values, sampled, forms, outside } = this.sample(intake, plan);
       const uniforms = program.uniforms.map((_, k) => this.points.coordinates("u", forms.length + k));
       const drawn = this.points.drawn(forms + "r".repeat(plan.uniformCount));
@@ -63,6 +65,17 @@ class Question {
     const answer = this.write(intake, plan, results, intervals, beyond, digest(body), language);
     for (const array of lent) if (array) give(array);
     return answer;
+  }
+
+  /** Throw InputProblems naming the first uncertain number for which the point set has no dimension left. */
+  requireDimensions({ values }, { sampled, uniformCount }) {
+    const left = this.points.components.length - uniformCount;
+    const spreads = sampled.flatMap((index) => [values[index]].flat().flatMap((value, item) => (isSpread(value) ? [[index, item]] : [])));
+    if (spreads.length <= left) return;
+    const [index, item] = spreads[left], pointer = this.model.slots[index].pointer.replace("*", item);
+    const problems = [];
+    refuse(problems, pointer, "too-many-uncertain", `${spreads.length} numbers are given with a spread; at most ${left} can be weighed together here: give some of them alone`);
+    throw new InputProblems(problems);
   }
 
   /** Best estimates, sampled arrays, forms of the dimensions used, slots beyond their range; dimensions are handed out in slot order, then item order. */

@@ -9,6 +9,7 @@ from .canonical import digest
 from .model import CheckModel
 from .plan import Plan
 from .points import POINTS, SCORE_LIMIT, PointSet
+from .problems import InputProblems, Problem
 from .validate import compile_intake
 
 LANGUAGE = 1               # the rule-language version this engine speaks
@@ -62,6 +63,7 @@ class Question:
         if not plan.sampled and not plan.uniform_count:      # arrays of the bundle alone
             with np.errstate(all="ignore"):
                 return plan, plan.run(intake.values, _NO_SAMPLES, _NO_SAMPLES, None, intake.sizes), None, _NO_SAMPLES
+        self._require_dimensions(intake, plan)
         with np.errstate(all="ignore"):
             values, sampled, forms, beyond = self._sample(intake, plan)
             uniforms = [self._points.uniform(len(forms) + k) for k in range(plan.uniform_count)]
@@ -77,6 +79,16 @@ class Question:
         intake = self.intake(body)
         plan, results, intervals, beyond = self.compute(intake)
         return self.writer.write(intake, plan, results, intervals, beyond, digest_of(body), language)
+
+    def _require_dimensions(self, intake, plan):
+        """Raise InputProblems naming the first uncertain number for which the point set has no dimension left."""
+        left = self._points.dimensions - plan.uniform_count
+        spreads = [(index, item) for index in plan.sampled for item, value in _items(intake.values[index]) if type(value) is tuple]
+        if len(spreads) > left:
+            index, item = spreads[left]
+            pointer = self.model.slots[index].pointer.replace("*", str(item), 1)
+            raise InputProblems([Problem(pointer, "too-many-uncertain", f"{len(spreads)} numbers are given with a spread; "
+                                         f"at most {left} can be weighed together here: give some of them alone")])
 
     # ---- samples -------------------------------------------------------------------------------------------------------------------
 
@@ -129,6 +141,11 @@ class Question:
         low, high, low_excluded, high_excluded = self._ranges[index]
         least, most = value - reach, value + reach
         return least < low or most > high or (low_excluded and least == low) or (high_excluded and most == high)
+
+
+def _items(value):
+    """(number of the item, its value) of a list, or of one value as of a list of one."""
+    return enumerate(value if type(value) is list else [value])
 
 
 class RuleSet:

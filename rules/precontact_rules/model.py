@@ -26,9 +26,12 @@ class CheckModel:
         self._lookups, self._applicable, self._inputs = {}, {}, {}
 
     def constant(self, name):
-        """The constant's record: value in SI, unit, source, standing."""
-        own = self.declared.get("constants", {})
-        return own[name] if name in own else self.bundle["constants"][name]
+        """The constant's record: value in SI, unit, source, standing. Raises KeyError."""
+        return self.declared.get("constants", {}).get(name) or self.bundle["constants"][name]
+
+    def constant_or_none(self, name):
+        """The constant's record, or None where no constant has this name."""
+        return self.declared.get("constants", {}).get(name) or self.bundle["constants"].get(name)
 
     # ---- axes fixed in the bundle ----------------------------------------------------------------------------------------------------
 

@@ -115,8 +115,8 @@ class Reader:
             return self.intake.titles[name][self.language]
         index = self.model.slot_index.get(name)
         if index is None:
-            constant = self.model.constant(name)
-            return self._quantity(constant["value"], constant["unit"])
+            constant = self.model.constant_or_none(name)
+            return self._quantity(constant["value"], constant["unit"]) if constant else self._quantity(None, None)     # a reference not given
         return self._slot_words(self.model.slots[index], self.intake.states[index], self.intake.values[index])
 
     def _formula_words(self, output):

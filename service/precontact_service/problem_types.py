@@ -59,6 +59,8 @@ TYPES = {
     "two-spreads": ProblemType(None, "Two spreads", "One number is given two different uncertainties.", "Give one."),
     "not-uncertain": ProblemType(None, "No spread here", "The field takes a plain number only.", "Give the number alone."),
     "too-many-items": ProblemType(None, "Too many items", "The list is longer than the check admits.", "Split the question."),
+    "too-many-uncertain": ProblemType(None, "Too many uncertain numbers", "More numbers are given with a spread than can be weighed together.",
+                                      "Give those that matter least alone, without a spread."),
     "too-few-items": ProblemType(None, "Too few items", "The list is shorter than the check needs.", "Add items."),
     "too-long": ProblemType(None, "Too long", "The text is longer than the field admits.", "Shorten it."),
     "bad-characters": ProblemType(None, "Unprintable characters", "The text holds a control or other unprintable character.", "Send plain text on one line."),

@@ -12,7 +12,7 @@ from .drawing import Drawing, stated
 from .faults import faulty
 
 ALIKE = 6               # questions of one shape
-DIMENSIONS = 60         # so many uncertain numbers a question has at most: the lattice has 64
+DIMENSIONS = 80         # so many uncertain numbers a question has at most: more than the 64 that the lattice has are refused
 
 
 class Dials(NamedTuple):

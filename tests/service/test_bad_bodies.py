@@ -18,6 +18,13 @@ def with_body(**members):
     return json.dumps({**GOOD, **members})
 
 
+def string_of(count):
+    """A string of so many elements whose resistance and reactance are both uncertain; the supply's resistance is uncertain too."""
+    part = {"resistance_ohm": {"value": 100, "half_width": 1}, "reactance_ohm": {"value": 10, "standard_uncertainty": 1}, "measured": False}
+    return json.dumps({"circuit": "series-string", "elements": [*[part] * (count - 1), {**part, "measured": True}], "instrument": "multimeter-ac-volts",
+                       "frequency_hertz": 50, "supply": {"voltage_volt": 12, "resistance_ohm": {"between": [1, 2]}}})
+
+
 # what it is: (body, status, pointer, code, words of the detail)
 BAD = {
     "unknown field": (with_body(colour="red"), 422, "/colour", "unknown-field", ("colour", "circuit")),
@@ -39,6 +46,8 @@ BAD = {
     "5 000-digit integer": ('{"source": {"voltage_volt": ' + "7" * 5000 + "}}", 400, "/source/voltage_volt", "not-finite", ("5000 digits",)),
     "integer beyond 2^53": (with_source(resistance_ohm=2 ** 53 + 2), 422, "/source/resistance_ohm", "out-of-range", ("9007199254740994",)),
     "integer beyond 2^64": (with_source(resistance_ohm=2 ** 70), 422, "/source/resistance_ohm", "out-of-range", ("1.1805916207174113e+21",)),      # as RFC 8785 writes it
+    "more uncertain numbers than the point set has dimensions": (
+        string_of(32), 422, "/elements/31/reactance_ohm", "too-many-uncertain", ("65", "64")),
     "bad UTF-8": (b'{"circuit": "\xff"}', 400, "", "not-utf-8", ("byte 13", "0xff")),
     "half a surrogate pair": (r'{"circuit": "\ud800"}', 400, "", "not-json", ("line 1", "surrogate")),
     "byte order mark": (b"\xef\xbb\xbf{}", 400, "", "byte-order-mark", ("byte order mark",)),
@@ -140,3 +149,8 @@ def test_query_of_a_catalogue(client, query, parameter, code):
     response = client.get(f"/v1/catalogues?{query}")
     assert response.status_code == 422
     assert [(fault["parameter"], fault["code"]) for fault in response.json["errors"]] == [(parameter, code)]
+
+
+def test_as_many_uncertain_numbers_as_the_point_set_has_dimensions(client):
+    answer = client.post(PATH, data=string_of(31), content_type=JSON)
+    assert answer.status_code == 200 and any("low" in result for result in answer.json["results"].values())

@@ -100,6 +100,7 @@ export default {
   "problem-too-long": "at most {most} characters",
   "problem-bad-characters": "holds a character that cannot be printed",
   "problem-too-many-items": "at most {most} can be given",
+  "problem-too-many-uncertain": "too many numbers have an uncertainty: give this one alone",
   "problem-too-few-items": "at least {least} must be given",
   "range-above": "above {value}",
   "range-least": "at least {value}",

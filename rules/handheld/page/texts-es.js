@@ -100,6 +100,7 @@ export default {
   "problem-too-long": "como máximo {most} caracteres",
   "problem-bad-characters": "contiene un carácter que no se puede imprimir",
   "problem-too-many-items": "se pueden indicar como máximo {most}",
+  "problem-too-many-uncertain": "hay demasiados números con incertidumbre: indique este solo",
   "problem-too-few-items": "hay que indicar al menos {least}",
   "range-above": "mayor que {value}",
   "range-least": "al menos {value}",
