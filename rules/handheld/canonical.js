@@ -2,7 +2,7 @@
 import { sha256 } from "./sha256.js";
 
 const encoder = new TextEncoder();
-const hex = (bytes) => Array.from(bytes, (b) => b.toString(16).padStart(2, "0")).join("");
+const HEX = Array.from({ length: 256 }, (_, b) => b.toString(16).padStart(2, "0"));
 
 /** RFC 8785 text of JSON data. A member that is undefined is not there. @param {unknown} data @returns {string} */
 export function canonicalText(data) {
@@ -12,7 +12,7 @@ export function canonicalText(data) {
 }
 
 /** "sha-256:" and 64 hexadecimal digits of some bytes. @param {Uint8Array} bytes */
-export const digestOf = (bytes) => `sha-256:${hex(sha256(bytes))}`;
+export const digestOf = (bytes) => sha256(bytes).reduce((text, b) => text + HEX[b], "sha-256:");
 
 /** The digest of JSON data: that of its canonical bytes. @param {unknown} data */
 export const digest = (data) => digestOf(encoder.encode(canonicalText(data)));

@@ -48,8 +48,9 @@ export const namesIn = (text) => template(text).filter((part) => part.name).map(
 
 /** The sentence; words(name) and listed(name, condition) supply what stands in its places. */
 export function filled(parts, words, listed, language) {
-  const [first = "", ...rest] = parts.map((part) => (part.name === undefined ? part : part.condition ? joined(listed(part.name, part.condition), language) : words(part.name))).join("");
-  return (first <= LATIN ? first.toUpperCase() : first) + rest.join("");      // it may begin with a name
+  const sentence = parts.map((part) => (part.name === undefined ? part : part.condition ? joined(listed(part.name, part.condition), language) : words(part.name))).join("");
+  const first = sentence.slice(0, 1);      // it may begin with a name
+  return (first <= LATIN ? first.toUpperCase() : first) + sentence.slice(1);
 }
 
 /** Names as a list in a sentence: "a, b and c". */
