@@ -60,7 +60,7 @@ function neededFor(p, wanted) {
 }
 
 /** Say after which step each pooled array may be given back: when nothing still needed reads it. */
-function markSpent({ steps, results }) {
+function markSpent(steps, results) {
   const last = new Map();
   for (const { reads, made, spent } of steps) {
     for (const from of reads) if (last.has(from)) last.set(from, spent);
@@ -70,36 +70,41 @@ function markSpent({ steps, results }) {
 }
 
 /**
- * The compiled program of a set of [node, lane] wanted by the answer: {arrays: whether anything runs along an axis, uniforms: numbers of the
- * unknowns it rests on, run}. run({values, sampled, uniforms, drawn, sizes}) gives one value for each [node, lane] wanted: a number, a boolean, or
+ * The compiled program of a set of [node, lane] wanted by the answer: {exact: whether nothing runs along an axis, uniforms: numbers of the unknowns it
+ * rests on, run}. run({values, sampled, uniforms, drawn, sizes}) gives one value for each [node, lane] wanted: a number, a boolean, or
  * {data, sizes}, good until the next run.
  */
 export function compiled(graph, wanted) {
-  const { model, order } = graph, p = { graph, used: 0, constants: new Map(), found: new Map(), steps: [], inputs: [], borrowed: [], version: 0 };
+  const { model, order } = graph;
+  const p = { graph, used: 0, constants: new Map(), found: new Map(), ends: new Map(), steps: [], inputs: [], borrowed: [], version: 0 };
   p.size = order.map((axis) => (axis === "samples" ? POINTS : axisFrom(model, axis) === "list" ? 0 : axisSize(model, axis)));
-  const needed = neededFor(p, wanted), lists = order.slice(0, -1).filter((axis) => axisFrom(model, axis) === "list");
-  p.uniforms = [...new Set(needed.filter(([{ op }, lane]) => op === "uniform" && lane === "s").map(([node]) => node.extra[0]))].sort((a, b) => a - b);
+  const needed = neededFor(p, wanted), lists = order.slice(0, -1).flatMap((axis, k) => (axisFrom(model, axis) === "list" ? [[axis, k]] : []));
+  const uniforms = needed.filter(([{ op }, lane]) => op === "uniform" && lane === "s").map(([node]) => node.extra[0]);
+  p.uniforms = [...new Set(uniforms)].sort((a, b) => a - b);
   p.S = new Float64Array(needed.length * 2 + 9);
   for (const [node, lane] of needed) p.found.set(node.index + lane, emit(p, node, lane));
-  p.results = wanted.map(([node, lane]) => at(p, node, lane));
-  markSpent(p);
-  const lent = p.steps.map(({ made }) => made).filter((made) => p.results.includes(made)), truths = p.results.map((_, i) => wanted[i][0].boolean);
-  p.run = (request) => {
-    for (const from of lent) if (from.d) give(from.d);
-    for (const axis of lists) {
-      const k = order.indexOf(axis), size = request.sizes.get(axis);
-      if (p.size[k] !== size) p.version++;
-      p.size[k] = size;
-    }
-    p.drawn = request.drawn;
-    for (const read of p.inputs) read(request);
-    for (const { run, spent } of p.steps) {
-      run();
-      for (const from of spent) give(from.d);
-      while (p.borrowed.length) give(p.borrowed.pop());
-    }
-    return p.results.map(({ k, d, places }, i) => (k < 0 ? { data: d, sizes: places.map((q) => p.size[q]) } : truths[i] ? p.S[k] !== 0 : p.S[k]));
+  const results = wanted.map(([node, lane]) => at(p, node, lane)), truths = wanted.map(([node]) => node.boolean), { S, size, steps, inputs, borrowed } = p;
+  markSpent(steps, results);
+  const lent = steps.map(({ made }) => made).filter((made) => results.includes(made)), work = steps.map(({ run, spent }) => [run, spent]);
+  p.found = p.constants = p.steps = graph.nodes = graph.values = null;      // a plan is kept: it holds on to nothing but its steps
+  return {
+    exact: !needed.some(([node]) => node.axes),
+    uniforms: p.uniforms,
+    run(request) {
+      for (const from of lent) if (from.d) give(from.d);
+      for (const [axis, k] of lists) {
+        const now = request.sizes.get(axis);
+        if (size[k] !== now) p.version++;
+        size[k] = now;
+      }
+      p.drawn = request.drawn;
+      for (const read of inputs) read(request);
+      for (const [run, spent] of work) {
+        run();
+        for (const from of spent) give(from.d);
+        while (borrowed.length) give(borrowed.pop());
+      }
+      return results.map(({ k, d, places }, i) => (k < 0 ? { data: d, sizes: places.map((q) => size[q]) } : truths[i] ? S[k] !== 0 : S[k]));
+    },
   };
-  p.arrays = needed.some(([node]) => node.axes);
-  return p;
 }

@@ -11,9 +11,12 @@ export const placesIn = (g, axes) => [...g.order.keys()].filter((k) => axes & (1
 /** Whether an axis is a list without items. */
 export const isEmpty = (g, axis) => axisFrom(g.model, axis) === "list" && !g.filled.has(axis);
 
+const NONE = [];
+
 /** The node for this operation; the same one when asked again. */
-export function node(g, op, args, extra = [], axes = args.reduce((all, a) => all | a.axes, 0), sure = false, boolean = false) {
-  const key = `${op} ${axes} ${args.map((a) => a.index)} ${extra}`;
+export function node(g, op, args, extra = NONE, axes = args.reduce((all, a) => all | a.axes, 0), sure = false, boolean = false) {
+  let key = `${op} ${axes} ${extra}`;
+  for (const a of args) key += ` ${a.index}`;
   let found = g.nodes.get(key);
   if (!found) g.nodes.set(key, (found = { op, args, extra, axes, boolean, sure, index: g.nodes.size }));
   return found;

@@ -71,18 +71,24 @@ export function perSizes(p, make) {
   };
 }
 
+/** A step on single numbers. */
+function single({ S }, kernel, [i, j, l], k) {
+  return () => kernel(S, k, 1, S, i, 0, S, j, 0, S, l, 0);
+}
+
 /** A step that applies an operation number by number. */
 export function apply(p, op, operands, out) {
-  const kernel = KERNELS[op], [x, y = x, z = x] = operands, starts = operands.map((o) => Math.max(o.k, 0)), [i, j, l] = starts, { S } = p;
-  if (out.k >= 0) {
-    step(p, operands, () => kernel(S, out.k, 1, S, i, 0, S, j, 0, S, l, 0));
-    return;
-  }
-  const loops = perSizes(p, (size) => nest(size, kernel, out.places, operands.map((o) => o.places)));
-  step(p, operands, () => {
+  const [x, y = x, z = x] = operands, starts = [x, y, z].map((o) => Math.max(o.k, 0));
+  if (out.k >= 0) step(p, operands, single(p, KERNELS[op], starts, out.k));
+  else step(p, operands, onArrays(p, KERNELS[op], [x, y, z], starts, operands.map((o) => o.places), out), out);
+}
+
+function onArrays(p, kernel, [x, y, z], starts, places, out) {
+  const loops = perSizes(p, (size) => nest(size, kernel, out.places, places));
+  return () => {
     out.d = take(total(p.size, out.places), out.boolean);
-    loops()(out.d, 0, [x.d ?? S, y.d ?? S, z.d ?? S], starts);
-  }, out);
+    loops()(out.d, 0, [x.d ?? p.S, y.d ?? p.S, z.d ?? p.S], starts);
+  };
 }
 
 /** Reads the numbers of a place, within a step, as an array that runs along `places`: its own where it already does. */

@@ -54,13 +54,13 @@ const extreme = (sign) => (p, { args, extra }, out, lane) => {
 
 /** Both ends of an interval are found once, whichever of them is asked for. */
 const end = (part) => (p, { args: [x] }, out) => {
-  const argument = at(p, x, "s"), { samples } = p.graph, key = `ends ${x.index}`, even = x.axes === samples && sampledLeaves(x, samples) === 1;
-  if (!p.found.has(key)) {
-    const found = {};
-    p.found.set(key, found);
-    step(p, [argument], () => { found.pairs = endsOfRows(argument.d, (samples) => (even ? evenEnds(samples) : coverageEnds(samples, p.drawn))); });
+  const argument = at(p, x, "s"), { samples } = p.graph, even = x.axes === samples && sampledLeaves(x, samples) === 1;
+  let found = p.ends.get(x.index);
+  if (!found) {
+    p.ends.set(x.index, (found = {}));
+    step(p, [argument], () => { found.pairs = endsOfRows(argument.d, (row) => (even ? evenEnds(row) : coverageEnds(row, p.drawn))); });
   }
-  each(p, [], out, () => (i) => p.found.get(key).pairs[i][part]);
+  each(p, [], out, () => (i) => found.pairs[i][part]);
 };
 
 export const overAxesSteps = {

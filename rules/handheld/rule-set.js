@@ -4,12 +4,12 @@ import { digest, digestOf } from "./canonical.js";
 import { compileIntake } from "./intake.js";
 import { give, take } from "./machine.js";
 import { modelOf } from "./model.js";
-import { Plan } from "./plan.js";
+import { planOf } from "./plan.js";
 import { POINTS, PointSet, SCORE_LIMIT } from "./points.js";
 import { InputProblems, refuse } from "./problems.js";
 
 export const LANGUAGE = 1;      // the rule-language version this engine speaks
-const PLANS_KEPT = 512;         // compiled signatures kept per check; the oldest goes first
+const PLANS_KEPT = 32;          // compiled signatures kept per check, 0.2 MB each; the oldest goes first
 const EDGE = 1 - 1 / POINTS;    // the outermost sample of a rectangular input, as a share of its half-width
 const NOTHING = [];
 
@@ -42,22 +42,22 @@ class Question {
     let plan = this.plans.get(key);
     if (!plan) {
       if (this.plans.size >= PLANS_KEPT) this.plans.delete(this.plans.keys().next().value);
-      this.plans.set(key, (plan = new Plan(this.model, intake.states, new Set(filled))));
+      this.plans.set(key, (plan = planOf(this.model, intake.states, new Set(filled))));
     }
     return plan;
   }
 
   answer(body, language) {
-    const intake = this.intake(body), plan = this.plan(intake), { program } = plan;
+    const intake = this.intake(body), plan = this.plan(intake);
     let results, intervals = null, beyond = NOTHING, lent = NOTHING;
     if (plan.exact) {
-      results = program.run(intake);
+      results = plan.run(intake);
     } else {
       this.requireDimensions(intake, plan);
       const { values, sampled, forms, outside } = this.sample(intake, plan);
-      const uniforms = program.uniforms.map((_, k) => this.points.coordinates("u", forms.length + k));
-      const drawn = this.points.drawn(forms + "r".repeat(plan.uniformCount));
-      results = program.run({ values, sampled, uniforms, drawn, sizes: intake.sizes });
+      const uniforms = plan.uniforms.map((_, k) => this.points.coordinates("u", forms.length + k));
+      const drawn = this.points.drawn(forms + "r".repeat(uniforms.length));
+      results = plan.run({ values, sampled, uniforms, drawn, sizes: intake.sizes });
       intervals = plan.intervals(results, drawn);
       beyond = outside;
       lent = sampled;
@@ -68,8 +68,8 @@ class Question {
   }
 
   /** Throw InputProblems naming the first uncertain number for which the point set has no dimension left. */
-  requireDimensions({ values }, { sampled, uniformCount }) {
-    const left = this.points.components.length - uniformCount;
+  requireDimensions({ values }, { sampled, uniforms }) {
+    const left = this.points.components.length - uniforms.length;
     const spreads = sampled.flatMap((index) => [values[index]].flat().flatMap((value, item) => (isSpread(value) ? [[index, item]] : [])));
     if (spreads.length <= left) return;
     const [index, item] = spreads[left], pointer = this.model.slots[index].pointer.replace("*", item);

@@ -16,7 +16,10 @@ export const isKey = (value) => value.key !== undefined;
 export const isSettled = (value) => typeof value === "boolean";
 
 /** What lacks all that the absent ones of `values` lack. */
-export const missing = (values) => ({ needs: [...new Set(values.flatMap((v) => v.needs ?? []))] });
+export function missing(values) {
+  const absent = values.filter(isAbsent);
+  return absent.length === 1 && absent[0].needs.length < 2 ? absent[0] : { needs: [...new Set(absent.flatMap((v) => v.needs))] };
+}
 
 /** How many uncertain quantities a node without other axes rests on; a list counts as many. */
 export function sampledLeaves(node, samples) {
