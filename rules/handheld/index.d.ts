@@ -68,6 +68,8 @@ export class RuleSet {
   readonly checkNames: string[];
   /** checks that disagreed with a worked case here, and why */
   readonly blocked: Map<string, string>;
+  /** Give back the memory of what was compiled for earlier questions; the next ones take a little longer. */
+  forget(): void;
   /** @throws {InputProblems} @throws {UnknownCheck} @throws {CheckBlocked} */
   answer(check: string, body: object, language?: Language): Answer;
 }

@@ -55,6 +55,7 @@ async function provedWhole(ruleSet) {
     await new Promise((resolve) => setTimeout(resolve));
     since = now();
   }
+  ruleSet.forget();
   return whole;
 }
 

@@ -9,7 +9,7 @@ import { POINTS, PointSet, SCORE_LIMIT } from "./points.js";
 import { InputProblems, refuse } from "./problems.js";
 
 export const LANGUAGE = 1;      // the rule-language version this engine speaks
-const PLANS_KEPT = 32;          // compiled signatures kept per check, 0.2 MB each; the oldest goes first
+const PLANS_KEPT = 128;         // compiled signatures kept per check, 0.2 MB each; the oldest goes first
 const EDGE = 1 - 1 / POINTS;    // the outermost sample of a rectangular input, as a share of its half-width
 const NOTHING = [];
 
@@ -147,6 +147,11 @@ export class RuleSet {
   /** Names of the checks, sorted. */
   get checkNames() {
     return Object.keys(this.data.checks).sort();
+  }
+
+  /** Give back the memory of what was compiled for earlier questions; the next ones take a little longer. */
+  forget() {
+    this.questions.clear();
   }
 
   /**
