@@ -1,4 +1,7 @@
-"""What all tests share: the rule set as its sources are now."""
+"""What all tests share: the rule set as its sources are now, the application, the wheel."""
+import shutil
+import subprocess
+import sys
 from pathlib import Path
 
 import pytest
@@ -6,7 +9,8 @@ import pytest
 from precontact_rules import RuleSet
 from precontact_rules.authoring.build import build, canonical
 
-SOURCE = Path(__file__).resolve().parents[1] / "rules" / "source"
+ROOT = Path(__file__).resolve().parents[1]
+SOURCE = ROOT / "rules" / "source"
 
 
 def pytest_addoption(parser):
@@ -34,3 +38,18 @@ def app():
 def client(app):
     """A client of the whole stack, from the outermost layer inwards."""
     return app.test_client()
+
+
+@pytest.fixture(scope="session")
+def wheel(tmp_path_factory):
+    """The wheel that this repository builds, made from a copy: building leaves things behind, and a test must not."""
+    folder = tmp_path_factory.mktemp("wheel")
+    copy = folder / "copy"
+    copy.mkdir()
+    for part in ("rules", "service"):
+        shutil.copytree(ROOT / part, copy / part, ignore=shutil.ignore_patterns("__pycache__", "*.egg-info", "node_modules"))
+    for file in ("pyproject.toml", "README.md"):
+        shutil.copy(ROOT / file, copy)
+    subprocess.run([sys.executable, "-m", "pip", "wheel", "--quiet", "--no-deps", "--no-build-isolation", "--wheel-dir", folder, "."],
+                   cwd=copy, check=True, capture_output=True)
+    return next(folder.glob("*.whl"))

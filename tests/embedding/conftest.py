@@ -23,7 +23,7 @@ def snippets():
 
 
 @pytest.fixture(scope="session")
-def rule_set():
+def released_set():
     """The rule set that the guide names."""
     return released.load("1.0.0")
 
@@ -40,8 +40,8 @@ def rule_set_folder(tmp_path_factory):
 
 
 @pytest.fixture
-def app(tmp_path, snippets, rule_set_folder):
-    """app(part) -> a folder with the snippets of one part, the rule set beside them, and the runtime as an installed package."""
+def app_folder(tmp_path, snippets, rule_set_folder):
+    """app_folder(part) -> a folder with the snippets of one part, the rule set beside them, and the runtime as an installed package."""
 
     def laid_out(part):
         for name, text in snippets.items():
