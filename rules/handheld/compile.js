@@ -4,15 +4,17 @@
  * Every node that depends on samples has two lanes: "a", the plain formula at the best estimates, and "s", an array over the point set.
  */
 import { placesIn } from "./graph.js";
-import { apply, at, axisAt, constantPlace, give, input, isCorrected, laneOf, place, register } from "./machine.js";
+import { apply, at, axisAt, constantPlace, give, input, isCorrected, numberOf, place, register } from "./machine.js";
 import { axisFrom, axisSize, columnArray, constant } from "./model.js";
 import { overAxesSteps } from "./over-axes-steps.js";
 import { POINTS } from "./points.js";
 
 const OF_SAMPLES = ["share", "mean", "low_end", "high_end"];
 
+const upTo = (n) => Float64Array.from({ length: n }, (_, i) => i);
+
 function leaf(p, { op, extra: [first, second] }, lane, out) {
-  const { model } = p.graph, upTo = (n) => Float64Array.from({ length: n }, (_, i) => i);
+  const { model } = p.graph;
   switch (op) {
     case "number": return constantPlace(p, first);
     case "constant": return constantPlace(p, constant(model, first).value);
@@ -27,12 +29,15 @@ function leaf(p, { op, extra: [first, second] }, lane, out) {
   }
 }
 
+/** The place of the coordinates on which an unknown is drawn. */
+const coordinates = (p, unknown) => input(p, place([axisAt(p, "samples")]), ({ uniforms }) => uniforms[p.uniforms.indexOf(unknown)]);
+
 /** The place of a node's value in a lane, and the steps that compute it. */
 function emit(p, node, lane) {
   const { graph } = p, places = placesIn(graph, lane === "s" ? node.axes : node.axes & ~graph.samples), { op, args, extra, boolean } = node;
-  const found = leaf(p, node, lane, () => (places.length ? place(places, boolean) : register(p, 0, boolean)));
+  const made = () => (places.length ? place(places, boolean) : register(p, 0, boolean)), found = args.length ? null : leaf(p, node, lane, made);
   if (found) return found;
-  const out = places.length ? place(places, boolean) : register(p, 0, boolean);
+  const out = made();
   if (overAxesSteps[op]) {
     overAxesSteps[op](p, node, out, lane);
     return out;
@@ -40,23 +45,23 @@ function emit(p, node, lane) {
   const operands = args.map((a) => at(p, a, lane));
   if (op === "code_is") operands.push(constantPlace(p, extra[0]));
   if (op === "indicator" && !operands[1]) operands.push(constantPlace(p, 1));
-  if (op === "uniform") operands.push(lane === "a" ? constantPlace(p, 0.5) : input(p, place([axisAt(p, "samples")]), ({ uniforms }) => uniforms[p.uniforms.indexOf(extra[0])]));
+  if (op === "uniform") operands.push(lane === "a" ? constantPlace(p, 0.5) : coordinates(p, extra[0]));
   apply(p, op === "code_is" ? "eq" : op, operands, out);
   return out;
 }
 
 /** [node, lane] of all that has to be computed, operands first. */
 function neededFor(p, wanted) {
-  const found = new Map(), queue = wanted.map(([node, lane]) => [node, laneOf(p, node, lane)]);
+  const found = [], queue = [...wanted];
   for (const [node, lane] of queue) {
-    const key = node.index + lane, [first] = node.args;
-    if (found.has(key)) continue;
-    found.set(key, [node, lane]);
+    const number = numberOf(p, node, lane), { op, args } = node;
+    if (found[number]) continue;
+    found[number] = [node, number % 2 ? "s" : "a"];
     // A corrected share reads the sides of its comparison, and sees by itself where they have no value.
-    const operands = node.op === "share" && isCorrected(p, first) ? [first, ...first.args] : node.args;
-    for (const a of operands) queue.push([a, laneOf(p, a, OF_SAMPLES.includes(node.op) ? "s" : lane)]);
+    const operands = op === "share" && isCorrected(p, args[0]) ? [args[0], ...args[0].args] : args, asked = OF_SAMPLES.includes(op) ? "s" : found[number][1];
+    for (const a of operands) queue.push([a, asked]);
   }
-  return [...found.values()].sort(([a], [b]) => a.index - b.index);
+  return found.filter(Boolean);
 }
 
 /** Say after which step each pooled array may be given back: when nothing still needed reads it. */
@@ -66,7 +71,7 @@ function markSpent(steps, results) {
     for (const from of reads) if (last.has(from)) last.set(from, spent);
     if (made) last.set(made, spent);
   }
-  last.forEach((spent, from) => { if (!results.includes(from)) spent.push(from); });
+  last.forEach((spent, from) => { if (!results.has(from)) spent.push(from); });
 }
 
 /**
@@ -76,16 +81,17 @@ function markSpent(steps, results) {
  */
 export function compiled(graph, wanted) {
   const { model, order } = graph;
-  const p = { graph, used: 0, constants: new Map(), found: new Map(), ends: new Map(), steps: [], inputs: [], borrowed: [], version: 0 };
+  const p = { graph, used: 0, constants: new Map(), found: [], ends: new Map(), steps: [], inputs: [], borrowed: [], version: 0 };
   p.size = order.map((axis) => (axis === "samples" ? POINTS : axisFrom(model, axis) === "list" ? 0 : axisSize(model, axis)));
   const needed = neededFor(p, wanted), lists = order.slice(0, -1).flatMap((axis, k) => (axisFrom(model, axis) === "list" ? [[axis, k]] : []));
   const uniforms = needed.filter(([{ op }, lane]) => op === "uniform" && lane === "s").map(([node]) => node.extra[0]);
   p.uniforms = [...new Set(uniforms)].sort((a, b) => a - b);
   p.S = new Float64Array(needed.length * 2 + 9);
-  for (const [node, lane] of needed) p.found.set(node.index + lane, emit(p, node, lane));
+  for (const [node, lane] of needed) p.found[numberOf(p, node, lane)] = emit(p, node, lane);
   const results = wanted.map(([node, lane]) => at(p, node, lane)), truths = wanted.map(([node]) => node.boolean), { S, size, steps, inputs, borrowed } = p;
-  markSpent(steps, results);
-  const lent = steps.map(({ made }) => made).filter((made) => results.includes(made)), work = steps.map(({ run, spent }) => [run, spent]);
+  const kept = new Set(results);
+  markSpent(steps, kept);
+  const lent = steps.map(({ made }) => made).filter((made) => kept.has(made)), work = steps.map(({ run, spent }) => [run, spent]);
   p.found = p.constants = p.steps = graph.nodes = graph.values = null;      // a plan is kept: it holds on to nothing but its steps
   return {
     exact: !needed.some(([node]) => node.axes),

@@ -6,7 +6,10 @@ import { isAbsent } from "./values.js";
 export const bit = (g, axis) => 1 << g.order.indexOf(axis);
 
 /** Places in the order of axes of those in a set. */
-export const placesIn = (g, axes) => [...g.order.keys()].filter((k) => axes & (1 << k));
+export function placesIn({ order, sets }, axes) {
+  if (!sets.has(axes)) sets.set(axes, [...order.keys()].filter((k) => axes & (1 << k)));
+  return sets.get(axes);
+}
 
 /** Whether an axis is a list without items. */
 export const isEmpty = (g, axis) => axisFrom(g.model, axis) === "list" && !g.filled.has(axis);

@@ -7,7 +7,7 @@ import { noValue } from "./reported.js";
  * steps.
  */
 export function layout(model, plan, texts, language) {
-  const ordered = [...model.formulas].sort((a, b) => a.order - b.order), inBranch = applicable(model, plan.states), results = [], working = [];
+  const inBranch = applicable(model, plan.states), results = [], working = [];
   const lacks = (paths) => paths.some((path) => !inBranch.has(path));
 
   /** Whether every branch-bound input that the formula mentions belongs to other branches. */
@@ -25,7 +25,7 @@ export function layout(model, plan, texts, language) {
     return keys.length ? { value: null, reason: texts["needs-input"][language].replace("{names}", () => keys.join(", ")) } : undefined;
   }
 
-  for (const formula of ordered) {
+  for (const formula of model.ordered) {
     const output = plan.outputs.get(formula.name), { key, name, unit, text, source, show } = formula;
     if (show === "result") {
       const made = output.place === null ? fixed(output) : null;

@@ -21,14 +21,14 @@ export function give(data) {
   else pool.set(key, [data]);
 }
 
-/** The lane in which a node is computed where another asks for `lane`. */
-export const laneOf = ({ graph }, node, lane) => (node.axes & graph.samples ? lane : "a");
-
 /** Whether the probability of a comparison is corrected: on one uncertain input alone the points are even. */
 export const isCorrected = ({ graph }, condition) => SIDED.includes(condition.op) && sampledLeaves(condition, graph.samples) !== 1;
 
+/** The number of a node in one lane. */
+export const numberOf = ({ graph }, node, lane) => node.index * 2 + (lane === "s" && node.axes & graph.samples ? 1 : 0);
+
 /** Where a node's value stands in a lane. */
-export const at = (p, node, lane) => p.found.get(node.index + laneOf(p, node, lane));
+export const at = (p, node, lane) => p.found[numberOf(p, node, lane)];
 
 /** The place of an axis in the order of axes. */
 export const axisAt = ({ graph }, axis) => graph.order.indexOf(axis);

@@ -11,6 +11,7 @@ export function modelOf(bundle, name) {
   const declared = bundle.checks[name], { formulas, axes, findings } = declared, { slots } = declaredInputs(bundle, name);
   return {
     bundle, name, declared, formulas, axes, findings, slots,
+    ordered: [...formulas].sort((a, b) => a.order - b.order),
     slotIndex: new Map(slots.map((slot, index) => [slot.path, index])),
     formulaNamed: new Map(formulas.map((f) => [f.name, f])),
     axisNamed: new Map(axes.map((a) => [a.name, a])),

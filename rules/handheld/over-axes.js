@@ -9,9 +9,11 @@ const LOGIC = ["and", "or", "not"];
 
 /** Paths of the inputs whose absence leaves some comparison in a condition without an operand. */
 function missingIn(g, tree) {
-  const [op, ...rest] = Array.isArray(tree) ? tree : [""], named = op === "ref" && g.model.formulaNamed.get(rest[0]);
+  const [op, ...rest] = Array.isArray(tree) ? tree : [""], [name] = rest, named = op === "ref" && g.model.formulaNamed.get(name);
   if (COMPARISONS.includes(op)) return rest.map((t) => valueOf(g, t)).filter(isAbsent).flatMap(({ needs }) => (needs.length ? needs : [""]));
-  return named ? missingIn(g, named.tree) : LOGIC.includes(op) ? rest.flatMap((part) => missingIn(g, part)) : [];
+  if (!named) return LOGIC.includes(op) ? rest.flatMap((part) => missingIn(g, part)) : [];
+  if (!g.lacking.has(name)) g.lacking.set(name, missingIn(g, named.tree));
+  return g.lacking.get(name);
 }
 
 /** [node true where every operand compared in a condition has a value], or [] where that is certain. */

@@ -15,7 +15,8 @@ import { NO_VALUE } from "./values.js";
  */
 export function specialised(model, states, filled) {
   const order = [...model.axes.map((a) => a.name), "samples"];
-  const graph = { model, states, filled, order, forms, samples: 1 << (order.length - 1), values: new Map(), nodes: new Map(), uniforms: 0 };
+  const graph = { model, states, filled, order, forms, samples: 1 << (order.length - 1), uniforms: 0 };
+  for (const kept of ["values", "nodes", "sets", "lacking"]) graph[kept] = new Map();
   for (const { name } of model.formulas) formula(graph, name);      // in dependency order, so that no recursion grows deep
   return graph;
 }

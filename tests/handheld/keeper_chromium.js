@@ -4,11 +4,13 @@ import { reported } from "./browser.js";
 import { Server, bundle, madeKey } from "./publisher.js";
 
 const [browserPath, runtimePath] = process.argv.slice(2);
-const server = new Server([madeKey()]), newer = bundle("1.1.0");
-server.publish(bundle("1.0.0"));
+// The newer bundle alone asks for more than there is: how much the older one takes on the disk depends on when the browser packs it together.
+const older = bundle("1.0.0"), newer = bundle("1.1.0", (data) => { data.title.en += " ".repeat(older.length * 2); });
+const server = new Server([madeKey()]);
+server.publish(older);
 let page;
 
-const LITTLE_BYTES = newer.length * 1.7;        // one bundle, and not two
+const LITTLE_BYTES = older.length * 2;
 
 async function room(quotaSize) {
   const session = await page.context().newCDPSession(page);
