@@ -5,13 +5,21 @@ import { isAbsent, isComplex, missing } from "./values.js";
 const pair = (g, v) => (isComplex(v) ? v : { re: v, im: number(g, 0) });
 const parts = (a, f) => ({ re: f(a.re), im: f(a.im) });
 
-/** The form of a function of the values of its operands, absent where one of them is. */
-const of = (make) => (g, ...trees) => {
-  const values = trees.map((t) => valueOf(g, t));
-  return values.some(isAbsent) ? missing(values) : make(g, ...values);
+/** The form of a function of the values of its one or two operands, absent where one of them is. */
+const of = (make) => (g, tree, other) => {
+  const a = valueOf(g, tree);
+  if (other === undefined) return isAbsent(a) ? a : make(g, a);
+  const b = valueOf(g, other);
+  return isAbsent(a) || isAbsent(b) ? missing([a, b]) : make(g, a, b);
 };
 
-const plain = (op) => of((g, ...values) => node(g, op, values));
+const plain = (op) => {
+  const form = of((g, a, b) => node(g, op, b === undefined ? [a] : [a, b]));
+  return (g, tree, other) => {
+    const value = form(g, tree, other);
+    return isAbsent(value) ? missing([value]) : value;
+  };
+};
 
 // Adding zero and multiplying by one change nothing, so they are not nodes.
 const is = (a, value) => a.op === "number" && a.extra[0] === value;

@@ -67,11 +67,11 @@ function neededFor(p, wanted) {
 /** Say after which step each pooled array may be given back: when nothing still needed reads it. */
 function markSpent(steps, results) {
   const last = new Map();
-  for (const { reads, made, spent } of steps) {
-    for (const from of reads) if (last.has(from)) last.set(from, spent);
-    if (made) last.set(made, spent);
+  for (const one of steps) {
+    for (const from of one.reads) if (last.has(from)) last.set(from, one);
+    if (one.made) last.set(one.made, one);
   }
-  last.forEach((spent, from) => { if (!results.has(from)) spent.push(from); });
+  last.forEach((one, from) => { if (!results.has(from)) (one.spent ??= []).push(from); });
 }
 
 /**
@@ -91,7 +91,7 @@ export function compiled(graph, wanted) {
   const results = wanted.map(([node, lane]) => at(p, node, lane)), truths = wanted.map(([node]) => node.boolean), { S, size, steps, inputs, borrowed } = p;
   const kept = new Set(results);
   markSpent(steps, kept);
-  const lent = steps.map(({ made }) => made).filter((made) => kept.has(made)), work = steps.map(({ run, spent }) => [run, spent]);
+  const lent = steps.map(({ made }) => made).filter((made) => kept.has(made)), work = steps.map(({ run }) => run), after = steps.map(({ spent }) => spent);
   p.found = p.constants = p.steps = graph.nodes = graph.values = null;      // a plan is kept: it holds on to nothing but its steps
   return {
     exact: !needed.some(([node]) => node.axes),
@@ -105,9 +105,9 @@ export function compiled(graph, wanted) {
       }
       p.drawn = request.drawn;
       for (const read of inputs) read(request);
-      for (const [run, spent] of work) {
-        run();
-        for (const from of spent) give(from.d);
+      for (let i = 0; i < work.length; i++) {
+        work[i]();
+        if (after[i]) for (const from of after[i]) give(from.d);
         while (borrowed.length) give(borrowed.pop());
       }
       return results.map(({ k, d, places }, i) => (k < 0 ? { data: d, sizes: places.map((q) => size[q]) } : truths[i] ? S[k] !== 0 : S[k]));

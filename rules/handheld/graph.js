@@ -32,7 +32,11 @@ export const number = (g, value) => node(g, "number", [], [value], 0, true);
 export const test = (g, op, args, extra, axes) => node(g, op, args, extra, axes, true, true);
 
 /** The value of an expression tree. */
-export const valueOf = (g, tree) => (typeof tree === "number" ? number(g, tree) : g.forms.get(tree[0])(g, ...tree.slice(1)));
+export function valueOf(g, tree) {
+  if (typeof tree === "number") return number(g, tree);
+  const form = g.forms.get(tree[0]);      // most have one operand or two: they go without a list of them
+  return tree.length < 4 ? form(g, tree[1], tree[2]) : form(g, ...tree.slice(1));
+}
 
 /** A condition: true, false or a boolean node. What is absent is false. */
 export function conditionOf(g, tree) {

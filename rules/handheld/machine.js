@@ -36,10 +36,12 @@ export const axisAt = ({ graph }, axis) => graph.order.indexOf(axis);
 /** A place {places, boolean, k, d}: `places` of the axes a value runs along, and its register `k` in S (-1: none) or its array `d` of the present run. */
 export const place = (places, boolean = false, k = -1) => ({ places, boolean, k, d: null });
 
+const NOWHERE = [];
+
 /** A place for a single number. */
 export function register(p, value, boolean) {
   p.S[p.used] = value;
-  return place([], boolean, p.used++);
+  return place(NOWHERE, boolean, p.used++);
 }
 
 /** The place of a number that never changes. */
@@ -49,7 +51,7 @@ export function constantPlace(p, value) {
 }
 
 /** Add a step to the program; `reads` are the places it reads, `made` the one whose array it takes from the pool. */
-export const step = (p, reads, run, made) => p.steps.push({ run, reads, made, spent: [] });
+export const step = (p, reads, run, made) => p.steps.push({ run, reads, made, spent: null });
 
 /** A place that is set from the request before each run. */
 export function input(p, out, read) {

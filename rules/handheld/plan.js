@@ -7,7 +7,7 @@ import { endsOfRows } from "./over-axes-steps.js";
 import { specialised } from "./specialise.js";
 import { isAbsent, isComplex, isKey, isNode, isSettled, sampledLeaves } from "./values.js";
 
-const HIDDEN_AXES = ["count", "table"];
+const HIDDEN_AXES = ["count", "table"], NONE = [];
 const LEAVES = ["slot", "constant", "column", "lookup"];
 
 /**
@@ -33,12 +33,14 @@ export function planOf(model, states, filled) {
 
   function outputOf(formula) {
     const { name, names, unit, show } = formula, value = graph.values.get(name), factor = unit ? model.bundle.units[unit].factor : 1;
-    const output = { formula, names, factor, place: null, imaginary: null, samples: null, fixed: null, absent: null, hidden: [], axes: [] };
-    if (isAbsent(value)) return { ...output, absent: value };
-    if (isSettled(value) || isKey(value)) return { ...output, fixed: value.key ?? value };
+    const output = { formula, names, factor, place: null, imaginary: null, samples: null, fixed: null, absent: null, hidden: NONE, axes: NONE };
+    if (isAbsent(value)) return Object.assign(output, { absent: value });
+    if (isSettled(value) || isKey(value)) return Object.assign(output, { fixed: value.key ?? value });
     const [re, im] = isComplex(value) ? [value.re, value.im] : [value], axes = re.axes | (im ? im.axes : 0);
-    output.axes = model.axes.map((a) => a.name).filter((a) => axes & bit(graph, a));
-    output.hidden = output.axes.filter((a) => HIDDEN_AXES.includes(axisFrom(model, a)));
+    if (axes & ~samples) {
+      output.axes = model.axes.map((a) => a.name).filter((a) => axes & bit(graph, a));
+      output.hidden = output.axes.filter((a) => HIDDEN_AXES.includes(axisFrom(model, a)));
+    }
     if (output.hidden.length || (show === "hidden" && !model.mentioned.has(name))) return output;
     output.place = want(re);
     if (im) {

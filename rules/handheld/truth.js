@@ -69,6 +69,7 @@ export const truth = {
   first_of(g, ...trees) {
     const lacking = [], options = [];
     for (const tree of trees) {
+      if (tree === undefined) continue;
       const value = valueOf(g, tree), { re, im } = value;
       if (isAbsent(value)) {
         lacking.push(value);

@@ -75,14 +75,14 @@ class AnswerWriter:
         """Unverified numbers on which an acceptable verdict rests, by name, with source and standing."""
         fixed, slots = plan.basis(decided)
         found = dict(fixed)
-        origins, assumed = intake.origins, intake.assumed
+        origins, assumed = intake.origins, {place[0] if type(place) is tuple else place for place in intake.assumed}
         for index in slots:
             origin = origins.get(index)
             if origin is not None:
                 for record in origin if type(origin) is list else (origin,):
                     if record is not None and self.model.is_weak(record):
                         found.setdefault(self.model.slots[index].path, record)
-            elif index in assumed or any(type(i) is tuple and i[0] == index for i in assumed):
+            elif index in assumed:
                 record = self.model.slots[index].field["assume"]
                 if self.model.is_weak(record):
                     found.setdefault(self.model.slots[index].path, record)

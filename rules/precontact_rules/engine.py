@@ -46,7 +46,7 @@ class Question:
 
     def plan(self, intake):
         """The compiled plan for this request's signature."""
-        filled = tuple(axis for axis, size in intake.sizes.items() if size)
+        filled = tuple([axis for axis, size in intake.sizes.items() if size])
         key = (intake.states, filled)
         plan = self._plans.get(key)
         if plan is None:

@@ -83,12 +83,14 @@ class Layout:
         return f"({{'value': value}} if least < (value := {self._scaled(place, output)}) < most else {nothing})"
 
     def _plain(self, output):
-        if output.axes or output.imaginary is not None:
+        if output.axes:
             return f"reader.plain({self._named(output)})"
-        place = f"r[{output.place}]"
-        if output.formula["type"] == "boolean":
-            return place
-        return f"(value if least < (value := {self._scaled(place, output)}) < most else None)"
+        if output.imaginary is not None:
+            return f"{{'re': {self._bare(output.place, output)}, 'im': {self._bare(output.imaginary, output)}}}"
+        return f"r[{output.place}]" if output.formula["type"] == "boolean" else self._bare(output.place, output)
+
+    def _bare(self, place, output):
+        return f"(value if least < (value := {self._scaled(f'r[{place}]', output)}) < most else None)"
 
     @staticmethod
     def _scaled(place, output):

@@ -25,6 +25,7 @@ def quantity_writer(unit, language):
     if unit is None:
         return lambda value: _NO_VALUE[language]
     factor, symbol, prefixes, nothing = unit["factor"], unit["symbol"], unit["prefixes"], _NO_VALUE[language]
+    point = "," if language == "es" else "."
 
     def write(value):
         if value is None:
@@ -35,12 +36,10 @@ def quantity_writer(unit, language):
         exponent, digits = _rounded(abs(value))
         written = symbol
         if prefixes and value:
-            power = min(max((exponent // 3) * 3, -12), 9)
+            power = -12 if exponent < -12 else 9 if exponent > 9 else exponent // 3 * 3
             written, exponent = _PREFIXES[power] + symbol, exponent - power
-        text = _laid_out(digits, exponent)
-        if language == "es":
-            text = text.replace(".", ",")
-        return ("-" if value < 0 and digits != "0" else "") + text + ("\u00a0" + written if written else "")
+        text = _laid_out(digits, exponent, point)
+        return ("-" if value < 0 else "") + text + ("\u00a0" + written if written else "")
 
     return write
 
@@ -49,9 +48,9 @@ def _rounded(value):
     """(decimal exponent of the first digit, the significant digits) of a value >= 0, rounded half up on its exact binary value."""
     if value == 0:
         return 0, "0"
-    mantissa, _, power = f"{value:.{DIGITS}e}".partition("e")
-    if mantissa[-1] < "5":
-        return int(power), (mantissa[0] + mantissa[2:-1]).rstrip("0")
+    text = f"{value:.{DIGITS}e}"      # one digit more than is kept: "2.4973e+06"
+    if text[DIGITS + 1] < "5":
+        return int(text[DIGITS + 3:]), (text[0] + text[2:DIGITS + 1]).rstrip("0")
     shortest = repr(value).partition("e")[0].replace(".", "").strip("0")
     if len(shortest) != DIGITS + 1 or shortest[-1] != "5":
         # Not a tie, which has one digit more than is kept, a 5: there the C library's rounding of the exact value is the same.
@@ -64,14 +63,13 @@ def _rounded(value):
     return exponent, "".join(map(str, rounded.as_tuple().digits)).rstrip("0") or "0"
 
 
-def _laid_out(digits, exponent):
+def _laid_out(digits, exponent, point):
     if not -4 <= exponent <= 9:
-        return digits[0] + ("." + digits[1:] if len(digits) > 1 else "") + f"e{exponent}"
+        return digits[0] + (point + digits[1:] if len(digits) > 1 else "") + f"e{exponent}"
     if exponent < 0:
-        return "0." + "0" * (-exponent - 1) + digits
-    whole = digits[:exponent + 1].ljust(exponent + 1, "0")
-    fraction = digits[exponent + 1:]
-    return whole + ("." + fraction if fraction else "")
+        return "0" + point + "0" * (-exponent - 1) + digits
+    whole = exponent + 1
+    return digits[:whole] + point + digits[whole:] if len(digits) > whole else digits.ljust(whole, "0")
 
 
 class Template:

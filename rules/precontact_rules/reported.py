@@ -87,11 +87,9 @@ class Reader:
     # ---- working -------------------------------------------------------------------------------------------------------------------
 
     def plain(self, output):
-        """A formula's value for the working: a number, boolean, list, complex as an object, or null."""
-        value = self.results[output.place]
-        if output.imaginary is not None:
-            return {"re": self._bare(value, output.factor), "im": self._bare(self.results[output.imaginary], output.factor)}
-        return self._bare(value, output.factor)
+        """A formula's value for the working where it runs along an axis: a list, or complex lists as an object."""
+        value = self._bare(self.results[output.place], output.factor)
+        return value if output.imaginary is None else {"re": value, "im": self._bare(self.results[output.imaginary], output.factor)}
 
     def _bare(self, value, factor):
         if type(value) is float:
